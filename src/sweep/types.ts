@@ -84,3 +84,23 @@ export interface PointOutcome {
 }
 
 export type { CellFields, PointFields, Question, SpectralMeasure };
+
+export interface GridAxis {
+  readonly name: string;
+  readonly values: readonly (number | string)[];
+  /** unit or meaning for axis titles, e.g. 'bosons' or 'U N/(2J)' */
+  readonly unit: string;
+}
+
+/** A sweep's grid, addressed by ordinal; nothing of it is kept in memory but the axes. */
+export interface Grid {
+  readonly name: string;
+  readonly model: string;
+  /** varying fastest last: ordinal = mixed-radix index over these */
+  readonly axes: readonly GridAxis[];
+  readonly points: number;
+  readonly questions: readonly QuestionRecord[];
+  readonly cells: number;
+  pointAt(ordinal: number): GridPoint;
+  iterate(from?: number): IterableIterator<GridPoint>;
+}
