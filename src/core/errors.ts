@@ -60,6 +60,9 @@ export const CATALOGUE = {
   'queue.full': passing('the queue refuses jobs because its memory limit is reached'),
   'queue.payload': failure('a job that is not of the agreed form'),
   'queue.version': failure('a worker whose method version differs from the job'),
+  // analysis
+  'analysis.field': input('a field that result rows do not have'),
+  'analysis.axis': input('an axis, or a value on it, that the sweep does not have'),
   // command line
   'cli.usage': input('a command line that cannot be understood'),
   'cli.interrupted': failure('interrupted by the user'),
@@ -74,6 +77,8 @@ export interface ErrorDetails {
   readonly where?: string;
   /** The line in that file, counted from 1. */
   readonly line?: number;
+  /** The key path inside a document, e.g. `schedules[0].mean`. */
+  readonly key?: string;
   readonly found?: string;
   readonly allowed?: string;
   readonly cause?: unknown;
