@@ -49,6 +49,7 @@ export const CATALOGUE = {
   'sweep.differs': input('a sweep file that differs from the stored sweep of the same name'),
   // store
   'store.unreachable': passing('the store cannot be reached'),
+  'store.refused': failure('the database refuses the user or a right, or is older than PostgreSQL 14'),
   'store.full': failure('the disk that holds the store is full or read-only'),
   'store.locked': passing('the store is in use in a way that excludes this command'),
   'store.schema-newer': failure('the store was written by a newer windrow with a breaking schema'),
@@ -60,6 +61,7 @@ export const CATALOGUE = {
   'queue.full': passing('the queue refuses jobs because its memory limit is reached'),
   'queue.payload': failure('a job that is not of the agreed form'),
   'queue.version': failure('a worker whose method version differs from the job'),
+  'queue.incomplete': passing('jobs that ended without storing their results'),
   // analysis
   'analysis.field': input('a field that result rows do not have'),
   'analysis.axis': input('an axis, or a value on it, that the sweep does not have'),
