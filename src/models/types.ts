@@ -79,8 +79,15 @@ export interface ModelFamily<P = unknown> {
   readonly disordered: boolean;
   /** State names this family resolves. */
   readonly states: readonly { readonly name: string; readonly meaning: string }[];
+  /** Replaces parameters that are given in terms of the size (particles: 'size') by their values. */
+  complete?(parameters: P, size: number): P;
   /** Checks a request without building anything. @throws WindrowError model.size, model.parameter, state.unknown, state.invalid */
   check(request: SystemRequest<P>): void;
+  /**
+   * The same request in the one form that identifies it: parameters complete, no disorder of zero strength, states by the first name
+   * they have, 'same' where ψ and φ are written alike. Throws what `check` throws for states.
+   */
+  canonical(request: SystemRequest<P>): SystemRequest<P>;
   /** Upper estimates before anything is built: sector dimension ≤ dimension, stored nonzeros, and the kernel's storage. */
   extent(request: SystemRequest<P>): Extent;
   build(request: SystemRequest<P>): System;

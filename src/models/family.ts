@@ -1,0 +1,131 @@
+/**
+ * What all families share: checking a request, resolving its two states, restricting them to the sector of φ, canonical form.
+ *
+ * A family declares its words, its labels and how the sector of a set of labels is built; `defineFamily` makes the `ModelFamily` of it.
+ * Guarantees of a built system: φ has norm 1, ψ is the same object as φ for the return problem, every number is finite.
+ */
+import { canonicalJson } from '../core/json.js';
+import type { Json } from '../core/json.js';
+import { WindrowError } from '../core/errors.js';
+import type { HermitianMatrix, StateVector } from '../linalg/matrix.js';
+import { checkCommon } from './request.js';
+import { refusal } from './refusal.js';
+import { canonicalState, resolveState } from './states.js';
+import type { Label, LabelReader, StateSpace, Term } from './states.js';
+import type { Extent, ModelFamily, StateSpec, System, SystemRequest } from './types.js';
+
+export interface NamedState<P> {
+  readonly name: string;
+  readonly meaning: string;
+  /** What a system must be for the name to have a meaning, e.g. 'an even number of bosons'; required where `terms` may be null. */
+  readonly needs?: string;
+  terms(request: SystemRequest<P>): readonly Term[] | null;
+}
+
+/** H restricted to the connected component(s) of some labels. */
+export interface Sector {
+  readonly matrix: HermitianMatrix;
+  /** Row of a label, or −1 for a label outside the sector. */
+  indexOf(label: Label): number;
+}
+
+export interface FamilyDefinition<P> extends Omit<ModelFamily<P>, 'states' | 'check' | 'canonical' | 'extent' | 'build'> {
+  readonly states: readonly NamedState<P>[];
+  /** Checks that need more than one value, such as the length of a list. @throws WindrowError */
+  checkParameters?(request: SystemRequest<P>): void;
+  labels(request: SystemRequest<P>): LabelReader;
+  hilbertDimension(request: SystemRequest<P>): number;
+  /** @param support gives the labels of φ, for families that count its sector */
+  extent(request: SystemRequest<P>, support: () => readonly Label[]): Extent;
+  /** @param support labels of φ, distinct */
+  sector(request: SystemRequest<P>, support: readonly Label[]): Sector;
+}
+
+function stateSpace<P>(definition: FamilyDefinition<P>, request: SystemRequest<P>): StateSpace {
+  const names = definition.states.map((state) => state.name);
+  return {
+    ...definition.labels(request),
+    names,
+    named(name, where) {
+      const state = definition.states.find((candidate) => candidate.name === name);
+      if (state === undefined) throw refusal('state.unknown', `${definition.name} has no state "${name}"`, where, name, names.join(', '));
+      const terms = state.terms(request);
+      if (terms === null)
+        throw refusal('state.invalid', `the state ${name} does not fit this system`, where, name, `${state.needs ?? 'another system'}`);
+      return terms;
+    },
+  };
+}
+
+const labelsOf = (terms: readonly Term[]): readonly Label[] => terms.map((term) => term.label);
+
+function vectorOf(terms: readonly Term[], sector: Sector): StateVector {
+  const re = new Float64Array(sector.matrix.dimension);
+  const im = terms.some((term) => term.im !== 0) ? new Float64Array(sector.matrix.dimension) : null;
+  for (const term of terms) {
+    const row = sector.indexOf(term.label);
+    if (row < 0) continue;
+    re[row] = term.re;
+    if (im !== null) im[row] = term.im;
+  }
+  return { re, im };
+}
+
+function checkFinite(family: string, matrix: HermitianMatrix): void {
+  const planes = matrix.kind === 'tridiagonal' ? [matrix.diagonal, matrix.offDiagonal] : [matrix.re, matrix.im];
+  for (const plane of planes) {
+    if (plane !== null && !plane.every(Number.isFinite))
+      throw new WindrowError('matrix.not-finite', `a matrix element of ${family} is beyond double precision`, {
+        where: 'coupling, parameters',
+        allowed: 'energies below 1e308',
+      });
+  }
+}
+
+/** The family of a definition: its `check`, `canonical` and `build`. */
+export function defineFamily<P>(definition: FamilyDefinition<P>): ModelFamily<P> {
+  const states = (request: SystemRequest<P>): { prepared: readonly Term[]; detected: readonly Term[] } => {
+    checkCommon(definition, request);
+    definition.checkParameters?.(request);
+    const space = stateSpace(definition, request);
+    const prepared = resolveState(space, request.prepared, 'prepare');
+    const detected = request.detected === 'same' ? prepared : resolveState(space, request.detected, 'detect');
+    return { prepared, detected };
+  };
+  return {
+    ...definition,
+    check(request) {
+      states(request);
+    },
+    canonical(request) {
+      checkCommon(definition, request);
+      definition.checkParameters?.(request);
+      const space = stateSpace(definition, request);
+      const prepared = canonicalState(space, request.prepared, 'prepare');
+      const detected: StateSpec = request.detected === 'same' ? 'same' : canonicalState(space, request.detected, 'detect');
+      return {
+        ...request,
+        parameters: definition.complete?.(request.parameters, request.size) ?? request.parameters,
+        disorder: request.disorder?.strength === 0 ? null : request.disorder,
+        prepared,
+        detected: canonicalJson(detected as Json) === canonicalJson(prepared as Json) ? 'same' : detected,
+      };
+    },
+    extent(request) {
+      return definition.extent(request, () => labelsOf(states(request).detected));
+    },
+    build(request): System {
+      const { prepared, detected } = states(request);
+      const sector = definition.sector(request, labelsOf(detected));
+      checkFinite(definition.name, sector.matrix);
+      const phi = vectorOf(detected, sector);
+      return {
+        hilbertDimension: definition.hilbertDimension(request),
+        sectorDimension: sector.matrix.dimension,
+        matrix: sector.matrix,
+        detected: phi,
+        prepared: prepared === detected ? phi : vectorOf(prepared, sector),
+      };
+    },
+  };
+}
