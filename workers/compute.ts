@@ -12,5 +12,5 @@ import { evaluatePoint } from '../src/sweep/evaluate.js';
 /** @returns the outcomes in the order of the tasks, wrapped for transfer */
 export function evaluateTasks({ tasks, options }: ComputeRequest): unknown {
   const outcomes = tasks.map((task) => evaluatePoint(task, options, () => performance.now() / 1000));
-  return move({ [transferableSymbol]: transferables(outcomes), [valueSymbol]: outcomes } as never);
+  return move({ [transferableSymbol]: transferables(outcomes), [valueSymbol]: outcomes });
 }

@@ -6,7 +6,6 @@
  */
 import { WindrowError } from '../core/errors.js';
 import { findModel } from '../models/registry.js';
-import type { SystemRequest } from '../models/types.js';
 import { measureCost } from '../spectral/cost.js';
 import { answerCost } from '../statistics/cost.js';
 import type { PointSpec, QuestionRecord } from '../sweep/types.js';
@@ -14,7 +13,7 @@ import type { PointCost } from './bundler.js';
 
 export function pointCost(spec: PointSpec, measured: boolean, open: readonly QuestionRecord[]): PointCost {
   try {
-    const extent = findModel(spec.model).extent(spec as SystemRequest);
+    const extent = findModel(spec.model).extent(spec);
     const measure = measureCost(extent);
     const answers = open.map(({ question }) => answerCost(extent.dimension, question));
     return {

@@ -52,7 +52,7 @@ export async function runSweep(run: SweepRun): Promise<SweepSummary> {
   const shares = { kernel: 0, statistics: 0, store: 0 };
   let phase: SweepStatus['phase'] = 'feeding';
   let reused = 0;
-  let lastFault: unknown = null;
+  let lastFault: Error | null = null;
 
   const tracker = trackProgress(store, grid.name, {
     intervalMs: run.progressMs ?? PROGRESS_MS,
@@ -80,7 +80,7 @@ export async function runSweep(run: SweepRun): Promise<SweepSummary> {
       shares.statistics += report.seconds.statistics;
       shares.store += report.seconds.store;
     } catch (error) {
-      lastFault = error;
+      lastFault = asError(error);
       if (!isRetryable(error)) halt.abort(error);
       throw error;
     }
@@ -156,7 +156,7 @@ async function feedUntilComplete(
   tracker: Tracker,
   signal: AbortSignal,
   onReused: (cells: number) => void,
-  lastFault: () => unknown,
+  lastFault: () => Error | null,
 ): Promise<void> {
   let before = await withRetry(() => store.progress(grid.name), { signal });
   for (let walk = 1, fruitless = 0; !signal.aborted; walk++) {
@@ -210,6 +210,9 @@ function settledOrQuiet(tracker: Tracker, grid: Grid): () => boolean {
 /** @throws the error that halted the run, if one did */
 function endOf(signal: AbortSignal): SweepSummary['outcome'] {
   if (!signal.aborted) return 'done';
-  if (signal.reason === 'interrupted' || signal.reason === 'stopped') return signal.reason;
-  throw signal.reason;
+  const reason: unknown = signal.reason;
+  if (reason === 'interrupted' || reason === 'stopped') return reason;
+  throw asError(reason);
 }
+
+const asError = (thrown: unknown): Error => (thrown instanceof Error ? thrown : new Error(String(thrown)));

@@ -73,7 +73,9 @@ export function jobQueueSuite(name: string, makeHarness: () => Promise<QueueHarn
       await queue.add([sampleJob(1), sampleJob(2)]);
       expect(await queue.depth()).toBe(2);
       let deliveries = 0;
-      await consume(async () => void deliveries++);
+      await consume(async () => {
+        deliveries++;
+      });
       await empty();
       expect(deliveries).toBe(2);
     });
