@@ -1,8 +1,8 @@
 /** Resuming: the stored document of a sweep, run again. Only what is missing is computed. */
 import { WindrowError } from '../core/errors.js';
 import { withRetry } from '../core/retry.js';
-import { normalise } from '../sweep/document.js';
 import { expandGrid } from '../sweep/grid.js';
+import { documentFromJson } from '../sweep/read.js';
 import { runSweep } from './run-sweep.js';
 import type { SweepRun, SweepSummary } from './types.js';
 
@@ -18,5 +18,5 @@ export async function resumeSweep(name: string, run: Omit<SweepRun, 'grid' | 'do
       allowed: known.length === 0 ? 'none yet: run a sweep first' : known.join(', '),
     });
   }
-  return runSweep({ ...run, grid: expandGrid(normalise(record.document)), document: record.document });
+  return runSweep({ ...run, grid: expandGrid(documentFromJson(record.document)), document: record.document });
 }
