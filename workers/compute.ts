@@ -11,6 +11,6 @@ import { evaluatePoint } from '../src/sweep/evaluate.js';
 
 /** @returns the outcomes in the order of the tasks, wrapped for transfer */
 export function evaluateTasks({ tasks, options }: ComputeRequest): unknown {
-  const outcomes = tasks.map((task) => evaluatePoint(task, options, () => performance.now() / 1000));
+  const outcomes = tasks.map((task) => evaluatePoint(task, options, () => performance.now()));
   return move({ [transferableSymbol]: transferables(outcomes), [valueSymbol]: outcomes });
 }

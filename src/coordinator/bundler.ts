@@ -23,6 +23,8 @@ export interface BundlerOptions {
   readonly sweep: string;
   readonly methodVersion: string;
   readonly questions: readonly QuestionRecord[];
+  /** default JOB_POINTS */
+  readonly jobPoints?: number | undefined;
 }
 
 export interface Bundler {
@@ -32,7 +34,7 @@ export interface Bundler {
   flush(): readonly Job[];
 }
 
-export function createBundler({ sweep, methodVersion, questions }: BundlerOptions): Bundler {
+export function createBundler({ sweep, methodVersion, questions, jobPoints = JOB_POINTS }: BundlerOptions): Bundler {
   const indexOf = new Map(questions.map(({ id }, index) => [id, index]));
   let points: Job['points'][number][] = [];
   let memory = 0;
@@ -56,7 +58,7 @@ export function createBundler({ sweep, methodVersion, questions }: BundlerOption
       points.push({ id: point.id, spec, measured: point.measured, open });
       memory = Math.max(memory, estimate.memory);
       cost += estimate.operations;
-      return cost >= JOB_OPERATIONS || points.length >= JOB_POINTS ? [...complete, ...flush()] : complete;
+      return cost >= JOB_OPERATIONS || points.length >= jobPoints ? [...complete, ...flush()] : complete;
     },
     flush,
   };

@@ -8,7 +8,7 @@
 import { WindrowError } from '../core/errors.js';
 import { pause, withRetry } from '../core/retry.js';
 import type { Job, JobQueue } from '../queue/types.js';
-import type { ResultStore } from '../store/types.js';
+import type { MissingPoint, ResultStore } from '../store/types.js';
 import { METHOD_VERSION } from '../sweep/identity.js';
 import type { Grid, GridPoint } from '../sweep/types.js';
 import { createBundler } from './bundler.js';
@@ -25,14 +25,15 @@ export interface FeedOptions {
   readonly queue: JobQueue;
   /** jobs waiting and running at most */
   readonly window: number;
+  readonly jobPoints?: number | undefined;
   readonly signal: AbortSignal;
   /** cells of a chunk that were already stored */
   readonly onReused?: (cells: number) => void;
 }
 
 /** @returns number of jobs handed out; 0 for a complete walk means that nothing is missing */
-export async function feed({ grid, store, queue, window, signal, onReused }: FeedOptions): Promise<number> {
-  const bundler = createBundler({ sweep: grid.name, methodVersion: METHOD_VERSION, questions: grid.questions });
+export async function feed({ grid, store, queue, window, jobPoints, signal, onReused }: FeedOptions): Promise<number> {
+  const bundler = createBundler({ sweep: grid.name, methodVersion: METHOD_VERSION, questions: grid.questions, jobPoints });
   const questions = new Map(grid.questions.map((question) => [question.id, question]));
   let jobs = 0;
   const hand = async (ready: readonly Job[]): Promise<void> => {
@@ -41,8 +42,7 @@ export async function feed({ grid, store, queue, window, signal, onReused }: Fee
   for (const chunk of chunks(grid)) {
     if (signal.aborted) return jobs;
     const missing = await withRetry(() => store.enrol(grid.name, chunk), { signal });
-    const unanswered = missing.reduce((cells, point) => cells + point.questionIds.length, 0);
-    onReused?.(chunk.length * grid.questions.length - unanswered);
+    onReused?.(chunk.length * grid.questions.length - unanswered(chunk, missing));
     const specs = new Map(chunk.map(({ id, spec }) => [id, spec]));
     for (const point of missing) {
       const spec = specs.get(point.id);
@@ -58,6 +58,12 @@ export async function feed({ grid, store, queue, window, signal, onReused }: Fee
   }
   await hand(bundler.flush());
   return jobs;
+}
+
+/** Cells of the chunk without an answer; a point that stands at several places of the grid counts at each. */
+function unanswered(chunk: readonly GridPoint[], missing: readonly MissingPoint[]): number {
+  const open = new Map(missing.map(({ id, questionIds }) => [id, questionIds.length]));
+  return chunk.reduce((cells, { id }) => cells + (open.get(id) ?? 0), 0);
 }
 
 function* chunks(grid: Grid): Generator<readonly GridPoint[]> {

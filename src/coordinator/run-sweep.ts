@@ -152,7 +152,7 @@ async function register({ grid, document, store, retryFailed }: SweepRun): Promi
 
 /** Walks the grid, lets the queue run empty, and walks again while the store still misses something. */
 async function feedUntilComplete(
-  { grid, store, queue, pool, window }: SweepRun,
+  { grid, store, queue, pool, window, jobPoints }: SweepRun,
   tracker: Tracker,
   signal: AbortSignal,
   onReused: (cells: number) => void,
@@ -165,6 +165,7 @@ async function feedUntilComplete(
       store,
       queue,
       signal,
+      jobPoints,
       window: window ?? (pool === null ? 64 : 8 * pool.threads),
       ...(walk === 1 ? { onReused } : {}),
     });

@@ -23,6 +23,8 @@ export interface SweepRun {
   readonly onProgress?: (status: SweepStatus) => void;
   /** milliseconds between two progress reports, at least; default 250 */
   readonly progressMs?: number;
+  /** points bundled into one job at most; default 250 */
+  readonly jobPoints?: number;
   /** jobs kept waiting and running; default 8 for each thread, 64 without a pool */
   readonly window?: number;
 }

@@ -19,9 +19,8 @@ describe('transferables', () => {
   });
 
   it('leaves out views into larger memory, empty arrays and failed points', () => {
-    const memory = new WebAssembly.Memory({ initial: 1 });
     const measure = {
-      energies: new Float64Array(memory.buffer, 64, 3),
+      energies: new Float64Array(new ArrayBuffer(1024), 64, 3),
       weights: new Float64Array(8).subarray(2, 5),
       overlapRe: new Float64Array(0),
       overlapIm: new Float64Array(3),
