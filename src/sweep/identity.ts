@@ -6,7 +6,6 @@
  */
 import { digest, type Json } from '../core/json.js';
 import type { Question } from '../statistics/types.js';
-import type { SweepDocument } from './document.js';
 import type { PointSpec } from './types.js';
 
 /** Names the build of the numerics. It changes whenever stored numbers would change by more than rounding. */
@@ -25,9 +24,4 @@ export function questionId(question: Question): string {
 /** Id of a cell: a point under one question. */
 export function cellId(point: string, question: string): string {
   return digest({ method: METHOD_VERSION, point, question });
-}
-
-/** Digest of a sweep: equal for files that mean the same sweep, whatever they look like. */
-export function sweepDigest(document: SweepDocument): string {
-  return digest(document as unknown as Json);
 }

@@ -11,10 +11,14 @@ const DECIDED: Readonly<Record<string, string>> = {
   precision: 'every number is computed in double precision; there is nothing to choose',
 };
 
-/** Every problem of a document as a refusal, in the order zod found them. */
+/** Every problem of a document as a refusal. Missing keys come last: a key that is not known is often the missing one mistyped. */
 export function refusals(error: z.ZodError, root: unknown): Refusal[] {
-  return error.issues.flatMap((issue) => translate(issue, [], root));
+  return missingLast(error.issues.flatMap((issue) => translate(issue, [], root)));
 }
+
+export const isMissing = (refusal: Refusal): boolean => refusal.code === 'sweep.key' && refusal.details.found === 'nothing';
+
+const missingLast = (all: readonly Refusal[]): Refusal[] => [...all.filter((one) => !isMissing(one)), ...all.filter(isMissing)];
 
 function valueAt(root: unknown, path: KeyPath): unknown {
   let value: unknown = root;
@@ -41,33 +45,37 @@ function translate(issue: Issue, base: KeyPath, root: unknown): Refusal[] {
     return [new Refusal('sweep.key', path, 'a key that is missing', { found: 'nothing', allowed })];
   }
   if (issue.code === 'invalid_union') return union(issue, path, root, value);
-  const found = typeof value === 'string' ? shown(value) : value === null ? 'nothing (null)' : shown(value);
   const hint = issue.code === 'invalid_value' && typeof value === 'string' ? suggestion(value, issue.values.map(String)) : '';
-  return [new Refusal('sweep.value', path, `a value that is not allowed${hint}`, { found, allowed: allowedBy(issue) })];
+  return [new Refusal('sweep.value', path, `a value that is not allowed${hint}`, { found: shown(value), allowed: allowedBy(issue) })];
 }
 
 /** The branch the user meant: one whose form fits and that has the fewest complaints; none fits when all complain at the root. */
 function union(issue: Issue & { code: 'invalid_union' }, path: KeyPath, root: unknown, value: unknown): Refusal[] {
-  if ('discriminator' in issue && typeof issue.discriminator === 'string') {
-    const family = (value as Record<string, unknown>)[issue.discriminator];
+  if ('discriminator' in issue) {
     const names = 'options' in issue && Array.isArray(issue.options) ? issue.options.map(String) : [];
-    if (family === undefined) {
-      return [
-        new Refusal('sweep.key', [...path, issue.discriminator], 'a key that is missing', { found: 'nothing', allowed: names.join(', ') }),
-      ];
-    }
-    const hint = typeof family === 'string' ? suggestion(family, names) : '';
-    const where = [...path, issue.discriminator];
-    return [new Refusal('schedule.unknown', where, `not a schedule family${hint}`, { found: shown(family), allowed: names.join(', ') })];
+    const hint = typeof value === 'string' ? suggestion(value, names) : '';
+    return [new Refusal('schedule.unknown', path, `not a schedule family${hint}`, { found: shown(value), allowed: names.join(', ') })];
   }
-  let best: { readonly branch: readonly Issue[]; readonly complaints: number } | null = null;
-  for (const branch of issue.errors) {
+  let best: { readonly refusals: Refusal[]; readonly complaints: number } | null = null;
+  for (const branch of issue.errors.flatMap(branches)) {
     if (branch.some((one) => one.path.length === 0 && one.code !== 'unrecognized_keys' && !isBound(one))) continue;
-    const complaints = branch.reduce((sum, one) => sum + (one.code === 'unrecognized_keys' ? one.keys.length : 1), 0);
-    if (best === null || complaints < best.complaints) best = { branch, complaints };
+    const found = missingLast(branch.flatMap((one) => translate(one, path, root)));
+    const unknown = branch.flatMap((one) => (one.code === 'unrecognized_keys' ? one.keys : []));
+    const guessed = found.some((one) => one.message.includes('did you mean'));
+    // None of the keys belongs to this form: it is not what was meant, unless a name is nearly right.
+    if (typeof value === 'object' && value !== null && unknown.length === Object.keys(value).length && !guessed) continue;
+    const complaints = found.length - (guessed ? 0.5 : 0);
+    if (best === null || complaints < best.complaints) best = { refusals: found, complaints };
   }
-  if (best !== null) return best.branch.flatMap((one) => translate(one, path, root));
+  if (best !== null) return best.refusals;
   return [new Refusal('sweep.value', path, 'a value that is not allowed', { found: shown(value), allowed: issue.message })];
+}
+
+/** A union inside a union offers its own branches. */
+function branches(issues: readonly Issue[]): readonly (readonly Issue[])[] {
+  const [first] = issues;
+  const nested = first?.code === 'invalid_union' && first.path.length === 0 && !('discriminator' in first);
+  return nested ? first.errors.flatMap(branches) : [issues];
 }
 
 /** A complaint about the value of the right type, not about its type. */

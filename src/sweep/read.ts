@@ -6,6 +6,7 @@ import { WindrowError } from '../core/errors.js';
 import type { Json } from '../core/json.js';
 import { checkDocument } from './check.js';
 import { normalise, type SweepDocument } from './document.js';
+import { isMissing } from './issues.js';
 import { Refusal, refusalError, type KeyPath } from './refusal.js';
 import { decode, parseSource } from './source.js';
 
@@ -27,9 +28,10 @@ export function readSweep(source: string | Uint8Array, options: ReadOptions = {}
   const text = typeof source === 'string' ? source : decode(source, file);
   const parsed = parseSource(text, file);
   const lineOf = (refusal: Refusal): number => parsed.lineOf(refusal.path);
+  const before = (a: Refusal, b: Refusal): boolean => (isMissing(a) === isMissing(b) ? lineOf(a) < lineOf(b) : isMissing(b));
   try {
     const value = loadFiles(parsed.value, options.loadIntervals);
-    const document = normalise(value, (all) => all.reduce((first, one) => (lineOf(one) < lineOf(first) ? one : first)));
+    const document = normalise(value, (all) => all.reduce((first, one) => (before(one, first) ? one : first)));
     checkDocument(document, options.allowLarge ?? false);
     return document;
   } catch (error) {

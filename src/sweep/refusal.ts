@@ -38,7 +38,7 @@ export function pathText(path: KeyPath): string {
 
 /** A value as it is quoted in a message: one line, at most about sixty characters. */
 export function shown(value: unknown): string {
-  if (value === undefined) return 'nothing';
+  if (value === undefined || value === null) return 'nothing';
   const text = typeof value === 'number' ? String(value) : (JSON.stringify(value) ?? typeof value);
   return text.length <= 60 ? text : `${text.slice(0, 57)}…`;
 }

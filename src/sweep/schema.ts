@@ -101,6 +101,8 @@ const seed = z.int().min(0).describe('seed of the random stream; the same seed g
 
 const amplitude = z.union([z.number(), z.tuple([z.number(), z.number()])], { error: 'a number or [real, imaginary]' });
 
+const STATE_FORMS = 'a state name, { occupation: [...] }, { site: n }, { superposition: [[amplitude, state], …] }';
+
 /** A state as a family resolves it; whether it fits the model is the family's to say. */
 export const stateValue: z.ZodType = z.lazy(() =>
   z.union(
@@ -115,11 +117,11 @@ export const stateValue: z.ZodType = z.lazy(() =>
           .describe('[amplitude, state] pairs; normalised when built'),
       }),
     ],
-    { error: 'a state name, { occupation: [...] }, { site: n }, or { superposition: [[amplitude, state], …] }' },
+    { error: STATE_FORMS },
   ),
 );
 
-const stateKind: AxisKind = { one: 'a state', numeric: false, listValued: false };
+const stateKind: AxisKind = { one: STATE_FORMS, numeric: false, listValued: false };
 
 function parameterShape(declared: ReadonlyMap<string, ParameterDeclaration>): Record<string, z.ZodType> {
   return Object.fromEntries(

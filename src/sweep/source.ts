@@ -5,7 +5,7 @@
  * file can exhaust memory or the stack. YAML 1.2 (core schema, one document, no tags); JSON is read by the same parser, and held to
  * JSON's own grammar where the file is called .json.
  */
-import { isAlias, isMap, isScalar, isSeq, Lexer, LineCounter, parseDocument, type Node, type Pair } from 'yaml';
+import { isAlias, isMap, isScalar, isSeq, Lexer, LineCounter, parseDocument, visit, type Node, type Pair } from 'yaml';
 import { WindrowError, type ErrorCode } from '../core/errors.js';
 import type { KeyPath } from './refusal.js';
 
@@ -68,6 +68,20 @@ export function parseSource(text: string, file: string): Source {
     const sentence = problem.code === 'MULTIPLE_DOCS' ? 'several documents in one file' : problem.message;
     throw syntax(sentence, file, lines.linePos(problem.pos[0]).line, problem.code, allowedFor(problem.code));
   }
+  visit(document, {
+    Pair: (_, { key }) => {
+      // An object cannot carry this name as a plain key, and a schema would pass over it in silence.
+      if (!isScalar(key) || key.value !== '__proto__') return;
+      const line = lines.linePos(key.range?.[0] ?? 0).line;
+      throw new WindrowError('sweep.key', '__proto__: not a key', {
+        where: file,
+        line,
+        key: '__proto__',
+        found: '__proto__',
+        allowed: 'another name',
+      });
+    },
+  });
   if (file.endsWith('.json')) checkJson(text, file);
   return { value: valueOf(document, file), lineOf: (path) => lineOf(document.contents, path, lines) };
 }
