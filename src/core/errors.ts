@@ -58,10 +58,11 @@ export const CATALOGUE = {
   'store.data': failure('a stored row that cannot be read back'),
   // queue
   'queue.unreachable': passing('the queue cannot be reached'),
+  'queue.refused': failure('the queue server refuses the user or a right, or is older than Redis 6.2'),
   'queue.full': passing('the queue refuses jobs because its memory limit is reached'),
   'queue.payload': failure('a job that is not of the agreed form'),
   'queue.version': failure('a worker whose method version differs from the job'),
-  'queue.incomplete': passing('jobs that ended without storing their results'),
+  'queue.incomplete': failure('jobs that ended without storing their results'),
   // analysis
   'analysis.field': input('a field that result rows do not have'),
   'analysis.axis': input('an axis, or a value on it, that the sweep does not have'),

@@ -1,0 +1,190 @@
+/**
+ * The server process of a data folder: found by its postmaster.pid, started, stopped.
+ *
+ * PostgreSQL itself keeps a second server away from a data folder (postmaster.pid and a shared memory segment), so two processes may
+ * start one at once: one of the two servers ends at once and its starter uses the other. What PostgreSQL cannot see is a
+ * postmaster.pid whose process id now belongs to something else, or to a dead process that nobody has reaped; such a file is taken
+ * away here.
+ *
+ * The server gets its own session, so that Ctrl-C in a terminal does not reach it; no TCP port; and a socket in a folder only its user
+ * can enter. That folder has a short path, since a socket's path is limited to about 100 bytes.
+ */
+import { execFile, spawn } from 'node:child_process';
+import { randomBytes } from 'node:crypto';
+import { chown, link, lstat, mkdtemp, open, readFile, rename, rm, stat, unlink } from 'node:fs/promises';
+import { tmpdir } from 'node:os';
+import { basename, join } from 'node:path';
+import { promisify } from 'node:util';
+import { WindrowError } from '../../core/errors.js';
+import { cannotRun, type DataFolder } from './data-folder.js';
+import { fileError } from './embedded-errors.js';
+import { canRead, spawnAs, type ServerUser } from './server-user.js';
+
+/** Names the socket file; nothing listens on it. */
+export const PORT = 5432;
+
+export interface Postmaster {
+  readonly pid: number;
+  /** folder of the socket; null while the server has not written it yet */
+  readonly sockets: string | null;
+  /** accepts connections */
+  readonly ready: boolean;
+}
+
+/** What postmaster.pid says; null where there is none. */
+export async function readPostmaster(data: string): Promise<Postmaster | null> {
+  const text = await readFile(join(data, 'postmaster.pid'), 'utf8').catch(() => '');
+  return parsePostmaster(text);
+}
+
+/** Lines of the file: pid, data folder, start time, port, socket folder, address, shared memory, status. */
+function parsePostmaster(text: string): Postmaster | null {
+  const lines = text.split('\n');
+  const pid = Number(lines[0]);
+  if (!Number.isInteger(pid) || pid <= 0) return null;
+  return { pid, sockets: lines.length > 5 && lines[4] !== '' ? lines[4]! : null, ready: lines[7]?.trim() === 'ready' };
+}
+
+/** Whether the process is a living PostgreSQL of the folder's owner. */
+export async function isServing({ pid }: Postmaster, data: string): Promise<boolean> {
+  const { uid } = await stat(data);
+  if (process.platform !== 'linux') {
+    const ps = await promisify(execFile)('ps', ['-o', 'uid=,stat=,comm=', '-p', String(pid)]).catch(() => null);
+    const [owner, state, ...command] = (ps?.stdout ?? '').trim().split(/\s+/);
+    return Number(owner) === uid && !state!.startsWith('Z') && basename(command.join(' ')) === 'postgres';
+  }
+  const text = await readFile(`/proc/${pid}/stat`, 'utf8').catch(() => '');
+  const owner = await stat(`/proc/${pid}`).catch(() => null);
+  const [, command, state] = /^\d+ \((.*)\) (\S)/s.exec(text) ?? [];
+  return command === 'postgres' && state !== 'Z' && state !== 'X' && owner?.uid === uid;
+}
+
+/**
+ * Clears away what a dead server left. Its postmaster.pid stays where PostgreSQL itself sees that the process is gone (it then also
+ * looks for processes of that server that still run); a file whose process id is somebody else's goes. It is renamed first and
+ * read again, so that a file which another process has put there in the meantime goes back.
+ */
+export async function clearAway({ pid, sockets }: Postmaster, data: string): Promise<void> {
+  if (sockets !== null) await removeSockets(sockets);
+  if (!processExists(pid)) return;
+  const file = join(data, 'postmaster.pid');
+  const aside = `${file}.${randomBytes(6).toString('hex')}`;
+  try {
+    await rename(file, aside);
+  } catch {
+    return;
+  }
+  const taken = parsePostmaster(await readFile(aside, 'utf8'));
+  if (taken?.pid !== pid) await link(aside, file).catch(() => undefined);
+  await unlink(aside);
+}
+
+function processExists(pid: number): boolean {
+  try {
+    process.kill(pid, 0);
+    return true;
+  } catch (error) {
+    return (error as NodeJS.ErrnoException).code !== 'ESRCH';
+  }
+}
+
+const SOCKETS = 'windrow-';
+
+/** Removes a socket folder, if it is one of ours. */
+export async function removeSockets(folder: string): Promise<void> {
+  if (!new RegExp(`^${SOCKETS}[A-Za-z0-9]{6}$`).test(basename(folder))) return;
+  if ((await lstat(folder).catch(() => null))?.isDirectory() === true) await rm(folder, { recursive: true, force: true });
+}
+
+/** Longest path of a socket that every system accepts (sun_path of macOS has 104 bytes with the final NUL). */
+const LONGEST_SOCKET = 103;
+
+async function makeSockets(user: ServerUser): Promise<string> {
+  const fits = (folder: string): boolean =>
+    Buffer.byteLength(join(folder, `${SOCKETS}XXXXXX`, `.s.PGSQL.${PORT}`)) <= LONGEST_SOCKET && canRead(folder, user);
+  const parent = [tmpdir(), '/tmp'].find(fits);
+  if (parent === undefined)
+    throw new WindrowError('store.embedded', 'no folder for the socket of the embedded server; set TMPDIR to a short path', {
+      where: tmpdir(),
+      allowed: `a folder that the server's user can enter, with a path of at most ${LONGEST_SOCKET - 29} bytes`,
+    });
+  try {
+    const folder = await mkdtemp(join(parent, SOCKETS));
+    if (user !== null) await chown(folder, user.uid, user.gid);
+    return folder;
+  } catch (error) {
+    throw fileError(error, 'make the folder of the socket', parent);
+  }
+}
+
+const SETTINGS: Readonly<Record<string, string>> = {
+  listen_addresses: '',
+  unix_socket_permissions: '0700',
+  port: String(PORT),
+  max_connections: '200',
+  // Containers often have too little shared memory for parallel queries.
+  max_parallel_workers_per_gather: '0',
+  // No replication: less is written.
+  wal_level: 'minimal',
+  max_wal_senders: '0',
+  max_logical_replication_workers: '0',
+  max_wal_size: '512MB',
+  logging_collector: 'off',
+  log_checkpoints: 'off',
+  timezone: 'UTC',
+  log_timezone: 'UTC',
+};
+
+/** A server that was started and may still be on its way up. */
+export interface Started {
+  /** settles when the process ends; never rejects */
+  readonly ended: Promise<'ended'>;
+  /** lets this process end before the server does */
+  release(): void;
+}
+
+/**
+ * Starts a server; whether it comes up shows by connecting.
+ * @param log file that gets what the server prints
+ * @throws store.embedded, store.full
+ */
+export async function startPostmaster(postgres: string, { path, user }: DataFolder, log: string, settings = SETTINGS): Promise<Started> {
+  const sockets = await makeSockets(user);
+  const output = await open(log, 'a').catch((error: unknown) => {
+    throw fileError(error, 'write the log of the embedded server', log);
+  });
+  try {
+    const options = Object.entries(settings).flatMap(([name, value]) => ['-c', `${name}=${value}`]);
+    // Without a shell and pg_ctl in between: no path needs quoting, and the end of the process is seen at once.
+    const child = spawn(postgres, ['-D', path, '-k', sockets, ...options], {
+      ...spawnAs(user),
+      detached: true,
+      stdio: ['ignore', output.fd, output.fd],
+    });
+    await new Promise<void>((resolve, reject) => {
+      child.once('spawn', resolve);
+      child.once('error', (error) => reject(cannotRun(error, postgres)));
+    });
+    const ended = new Promise<'ended'>((resolve) => child.once('exit', () => void removeSockets(sockets).then(() => resolve('ended'))));
+    return { ended, release: () => child.unref() };
+  } catch (error) {
+    await removeSockets(sockets);
+    throw error;
+  } finally {
+    await output.close();
+  }
+}
+
+const STOP_MS = 60_000;
+
+/** Fast shutdown: sessions end, everything is written. Resolves when the data folder is free. */
+export async function stopPostmaster(data: string): Promise<void> {
+  const running = await readPostmaster(data);
+  if (running === null || !(await isServing(running, data))) return;
+  process.kill(running.pid, 'SIGINT');
+  const deadline = Date.now() + STOP_MS;
+  while ((await readPostmaster(data))?.pid === running.pid && (await isServing(running, data)) && Date.now() < deadline) await pause(10);
+  if (running.sockets !== null) await removeSockets(running.sockets);
+}
+
+export const pause = (ms: number): Promise<void> => new Promise((resolve) => setTimeout(resolve, ms));
