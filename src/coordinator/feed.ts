@@ -27,8 +27,8 @@ export interface FeedOptions {
   readonly window: number;
   readonly jobPoints?: number | undefined;
   readonly signal: AbortSignal;
-  /** cells of a chunk that were already stored */
-  readonly onReused?: (cells: number) => void;
+  /** cells that were already stored of the chunk that begins at `ordinal` */
+  readonly onReused: (ordinal: number, cells: number) => void;
 }
 
 /** @returns number of jobs handed out; 0 for a complete walk means that nothing is missing */
@@ -42,7 +42,7 @@ export async function feed({ grid, store, queue, window, jobPoints, signal, onRe
   for (const chunk of chunks(grid)) {
     if (signal.aborted) return jobs;
     const missing = await withRetry(() => store.enrol(grid.name, chunk), { signal });
-    onReused?.(chunk.length * grid.questions.length - unanswered(chunk, missing));
+    onReused(chunk[0].ordinal, chunk.length * grid.questions.length - unanswered(chunk, missing));
     const specs = new Map(chunk.map(({ id, spec }) => [id, spec]));
     for (const point of missing) {
       const spec = specs.get(point.id);

@@ -5,8 +5,6 @@
  * - Only missing cells are computed; running a finished sweep again changes nothing, so resuming is running.
  * - One process at a time hands out a sweep's jobs (a named lock of the store). Any other follows, and takes over when the lock is free
  *   and something is still missing: every process may die, or run twice.
- * - A job whose results never arrive (a queue that lost its memory, a worker that died for good) is found by comparing with the store
- *   and handed out again.
  * - Aborting the signal, or the state 'stopping' in the store, drains: nothing new is handed out, and this process's running jobs are
  *   finished and stored.
  *
@@ -15,84 +13,90 @@
  * @throws sweep.differs when the name is taken by another document or method version; queue.incomplete; errors of the store, the queue
  *         and the pool that outlast their retries
  */
-import { WindrowError } from '../core/errors.js';
 import { digest } from '../core/json.js';
 import { isRetryable, pause, withRetry } from '../core/retry.js';
-import type { Job } from '../queue/types.js';
+import type { ComputePool, Job } from '../queue/types.js';
 import type { SweepProgress } from '../store/types.js';
 import { METHOD_VERSION } from '../sweep/identity.js';
-import type { Grid } from '../sweep/types.js';
-import { drainedTo, feed } from './feed.js';
+import { feedUntilComplete } from './feed-until-complete.js';
 import { runJob } from './run-job.js';
-import { trackProgress, type Tracker } from './track-progress.js';
+import { trackProgress } from './track-progress.js';
 import type { SweepRun, SweepStatus, SweepSummary } from './types.js';
 
 const PROGRESS_MS = 250;
 /** Pause of a follower between two attempts to take over. */
 const FOLLOW_MS = 500;
-/** Without a new row for this long, the store is compared again although the queue is not empty (with other sweeps' jobs, perhaps). */
-const PATIENCE_MS = 300_000;
-/** Walks in a row that may hand out jobs without a single new row. */
-const FRUITLESS_WALKS = 3;
+/** Times a run starts over when the store or the queue was away for longer than a single call waits. */
+const STARTS = 3;
 
-type Halt = 'interrupted' | 'stopped';
+/** Why a run ends before its sweep does; an Error where going on is pointless. */
+type Halt = 'interrupted' | 'stopped' | Error;
 
 export async function runSweep(run: SweepRun): Promise<SweepSummary> {
-  const { grid, store, pool } = run;
+  const { grid, store, queue, pool } = run;
   const begun = performance.now();
-  const seconds = (): number => (performance.now() - begun) / 1000;
   await register(run);
 
-  // Why this run ends before its sweep does: a Halt, or the error that makes going on pointless.
-  const halt = new AbortController();
-  const interrupt = (): void => halt.abort('interrupted' satisfies Halt);
+  const halted = new AbortController();
+  const halt = (reason: Halt): void => halted.abort(reason);
+  const interrupt = (): void => halt('interrupted');
   if (run.signal?.aborted) interrupt();
   run.signal?.addEventListener('abort', interrupt, { once: true });
 
   const shares = { kernel: 0, statistics: 0, store: 0 };
+  const reused = reuseCounter();
   let phase: SweepStatus['phase'] = 'feeding';
-  let reused = 0;
   let lastFault: Error | null = null;
+
+  const report = ({ storedPoints, storedCells, failedPoints }: SweepProgress): void =>
+    run.onProgress?.({
+      sweep: grid.name,
+      phase: halted.signal.aborted ? 'draining' : phase,
+      points: grid.points,
+      cells: grid.cells,
+      storedPoints,
+      storedCells,
+      failedPoints,
+      reusedCells: reused.cells(),
+      seconds: (performance.now() - begun) / 1000,
+    });
 
   const tracker = trackProgress(store, grid.name, {
     intervalMs: run.progressMs ?? PROGRESS_MS,
-    onProgress: (progress) =>
-      run.onProgress?.({
-        sweep: grid.name,
-        phase: halt.signal.aborted ? 'draining' : phase,
-        points: grid.points,
-        cells: grid.cells,
-        storedPoints: progress.storedPoints,
-        storedCells: progress.storedCells,
-        failedPoints: progress.failedPoints,
-        reusedCells: reused,
-        seconds: seconds(),
-      }),
-    onStopping: () => halt.abort('stopped' satisfies Halt),
-    onError: (error) => halt.abort(error),
+    onProgress: report,
+    onStopping: () => halt('stopped'),
+    onError: (error) => halt(asError(error)),
   });
 
-  const handle = async (job: Job): Promise<void> => {
-    if (pool === null) return;
+  const compute = async (job: Job, threads: ComputePool): Promise<void> => {
     try {
-      const report = await runJob(job, store, pool, { memory: run.memory });
-      shares.kernel += report.seconds.kernel;
-      shares.statistics += report.seconds.statistics;
-      shares.store += report.seconds.store;
+      const { seconds } = await runJob(job, store, threads, { memory: run.memory });
+      shares.kernel += seconds.kernel;
+      shares.statistics += seconds.statistics;
+      shares.store += seconds.store;
     } catch (error) {
       lastFault = asError(error);
-      if (!isRetryable(error)) halt.abort(error);
+      if (!isRetryable(error)) halt(lastFault);
       throw error;
     }
   };
 
-  const feedToEnd = async (): Promise<boolean> => {
+  const feedToEnd = async (): Promise<true> => {
     phase = 'feeding';
     // Twice the threads, so that one job is stored while the next one is computed.
-    const consumer = pool === null ? null : await run.queue.consume(handle, { concurrency: 2 * pool.threads });
+    const consumer = pool === null ? null : await queue.consume((job) => compute(job, pool), { concurrency: 2 * pool.threads });
     try {
-      const counted = (cells: number): void => void (reused += cells);
-      await feedUntilComplete(run, tracker, halt.signal, counted, () => lastFault);
+      await feedUntilComplete({
+        grid,
+        store,
+        queue,
+        window: run.window ?? (pool === null ? 64 : 8 * pool.threads),
+        jobPoints: run.jobPoints,
+        signal: halted.signal,
+        onReused: reused.count,
+        latest: tracker.latest,
+        lastFault: () => lastFault,
+      });
     } finally {
       await consumer?.close(run.graceMs);
     }
@@ -100,29 +104,34 @@ export async function runSweep(run: SweepRun): Promise<SweepSummary> {
   };
 
   try {
-    while (!halt.signal.aborted) {
-      if ((await store.withLock(`sweep ${grid.name}`, feedToEnd)) !== null) break;
+    const { signal } = halted;
+    while (!signal.aborted) {
+      if ((await withRetry(() => store.withLock(`sweep ${grid.name}`, feedToEnd), { attempts: STARTS, signal })) !== null) break;
       phase = 'following';
-      await pause(FOLLOW_MS, halt.signal);
+      await pause(FOLLOW_MS, signal);
     }
   } finally {
     run.signal?.removeEventListener('abort', interrupt);
     await tracker.close();
   }
 
-  const outcome = endOf(halt.signal);
+  const reason = halted.signal.aborted ? (halted.signal.reason as Halt) : null;
+  if (reason instanceof Error) throw reason;
   const progress = await withRetry(() => store.progress(grid.name));
+  // A drain may have been all that was missing.
+  const outcome = reason === null || progress.storedCells >= grid.cells ? 'done' : reason;
   if (outcome === 'done') await withRetry(() => store.setSweepState(grid.name, 'done'));
+  report(progress);
   return {
     sweep: grid.name,
     outcome,
     points: grid.points,
     cells: grid.cells,
-    computed: Math.max(0, progress.storedCells - reused),
-    reused,
+    computed: Math.max(0, progress.storedCells - reused.cells()),
+    reused: reused.cells(),
     failed: progress.failedPoints,
     failures: progress.failures,
-    seconds: seconds(),
+    seconds: (performance.now() - begun) / 1000,
     shares,
   };
 }
@@ -139,81 +148,22 @@ async function register({ grid, document, store, retryFailed }: SweepRun): Promi
       questions: grid.questions,
     }),
   );
-  if (record.methodVersion !== METHOD_VERSION) {
-    throw new WindrowError('sweep.differs', `sweep '${grid.name}' was computed by another version of windrow; give this one another name`, {
-      where: grid.name,
-      found: `method version ${record.methodVersion}`,
-      allowed: METHOD_VERSION,
-    });
-  }
   if (retryFailed === true) await withRetry(() => store.clearFailures(grid.name));
   if (record.state !== 'open') await withRetry(() => store.setSweepState(grid.name, 'open'));
 }
 
-/** Walks the grid, lets the queue run empty, and walks again while the store still misses something. */
-async function feedUntilComplete(
-  { grid, store, queue, pool, window, jobPoints }: SweepRun,
-  tracker: Tracker,
-  signal: AbortSignal,
-  onReused: (cells: number) => void,
-  lastFault: () => Error | null,
-): Promise<void> {
-  let before = await withRetry(() => store.progress(grid.name), { signal });
-  for (let walk = 1, fruitless = 0; !signal.aborted; walk++) {
-    const jobs = await feed({
-      grid,
-      store,
-      queue,
-      signal,
-      jobPoints,
-      window: window ?? (pool === null ? 64 : 8 * pool.threads),
-      ...(walk === 1 ? { onReused } : {}),
-    });
-    if (jobs === 0 || signal.aborted) return;
-    await drainedTo(queue, 0, signal, settledOrQuiet(tracker, grid));
-    if (signal.aborted) return;
-    const after = await withRetry(() => store.progress(grid.name), { signal });
-    if (after.storedCells >= grid.cells) return;
-    fruitless = settled(after) > settled(before) ? 0 : fruitless + 1;
-    before = after;
-    if (fruitless < FRUITLESS_WALKS) continue;
-    throw (
-      lastFault() ??
-      new WindrowError('queue.incomplete', `jobs of sweep '${grid.name}' end without storing results; look at the log of the workers`, {
-        where: grid.name,
-        found: `${after.storedCells} of ${grid.cells} cells`,
-      })
-    );
-  }
-}
-
-const settled = (progress: SweepProgress): number => progress.storedPoints + progress.storedCells + progress.failedPoints;
-
-/**
- * Whether waiting for an empty queue can end early: everything seems settled, or nothing has happened for long. A failed point may
- * have some of its cells, so the count is a hint and the next walk decides.
- */
-function settledOrQuiet(tracker: Tracker, grid: Grid): () => boolean {
-  let seen = -1;
-  let since = performance.now();
-  return () => {
-    const progress = tracker.latest();
-    if (progress === null) return false;
-    if (settled(progress) !== seen) {
-      seen = settled(progress);
-      since = performance.now();
-    }
-    const accounted = progress.storedCells + progress.failedPoints * grid.questions.length;
-    return accounted >= grid.cells || performance.now() - since > PATIENCE_MS;
+/** Counts what was stored before the run came to it: each place of the grid at the first walk over it only. */
+function reuseCounter(): { readonly count: (ordinal: number, cells: number) => void; readonly cells: () => number } {
+  let cells = 0;
+  let next = 0;
+  return {
+    count(ordinal, found) {
+      if (ordinal < next) return;
+      next = ordinal + 1;
+      cells += found;
+    },
+    cells: () => cells,
   };
-}
-
-/** @throws the error that halted the run, if one did */
-function endOf(signal: AbortSignal): SweepSummary['outcome'] {
-  if (!signal.aborted) return 'done';
-  const reason: unknown = signal.reason;
-  if (reason === 'interrupted' || reason === 'stopped') return reason;
-  throw asError(reason);
 }
 
 const asError = (thrown: unknown): Error => (thrown instanceof Error ? thrown : new Error(String(thrown)));
