@@ -9,7 +9,7 @@ import type { HermitianMatrix, StateVector } from '../matrix.js';
 import { normBound, unitScale } from '../norm.js';
 import { BREAKDOWN } from '../precision.js';
 import type { PackedLower } from './packed.js';
-import { packLower } from './packed.js';
+import { packLower, pivoted, pivotOf } from './packed.js';
 
 interface Planes {
   readonly re: Float64Array;
@@ -20,14 +20,15 @@ interface Planes {
 export function householderComplex(matrix: HermitianMatrix, start: StateVector, carried: StateVector | null): Tridiagonalisation {
   const n = matrix.dimension;
   const scale = unitScale(normBound(matrix));
-  const a = packLower(matrix, scale, true);
-  const rotated = carried === null ? null : copy(carried, n);
+  const pivot = pivotOf(start);
+  const a = packLower(matrix, scale, true, pivot);
+  const rotated = carried === null ? null : pivotedPlanes(carried, pivot);
   const diagonal = new Float64Array(n);
   const offDiagonal = new Float64Array(Math.max(0, n - 1));
   const phases = zeros(n);
   const w = zeros(n);
   const product = zeros(n);
-  let u = copy(start, n);
+  let u = pivotedPlanes(start, pivot);
   let nextU = zeros(n);
 
   const first = reflector(u, 0);
@@ -67,8 +68,8 @@ function zeros(n: number): Planes {
   return { re: new Float64Array(n), im: new Float64Array(n) };
 }
 
-function copy(vector: StateVector, n: number): Planes {
-  return { re: vector.re.slice(), im: vector.im === null ? new Float64Array(n) : vector.im.slice() };
+function pivotedPlanes(vector: StateVector, pivot: number): Planes {
+  return { re: pivoted(vector.re, pivot), im: vector.im === null ? new Float64Array(vector.re.length) : pivoted(vector.im, pivot) };
 }
 
 /** conj(phase_k)·x_k for the first `size` elements. */

@@ -12,22 +12,22 @@ import type { HermitianMatrix, StateVector } from '../matrix.js';
 import type { Tridiagonalisation } from '../kernel.js';
 import { normBound, unitScale } from '../norm.js';
 import { BREAKDOWN } from '../precision.js';
-import { packLower } from './packed.js';
+import { packLower, pivoted, pivotOf } from './packed.js';
 
 /** For a real matrix and a real start vector; the carried vector may be complex. See `SpectralKernel.householder`. */
 export function householderReal(matrix: HermitianMatrix, start: StateVector, carried: StateVector | null): Tridiagonalisation {
   const n = matrix.dimension;
   const scale = unitScale(normBound(matrix));
-  const a = packLower(matrix, scale, false).re;
-  const planes = carried === null ? [] : [carried.re.slice(), ...(carried.im === null ? [] : [carried.im.slice()])];
+  const pivot = pivotOf(start);
+  const a = packLower(matrix, scale, false, pivot).re;
+  const planes = [carried?.re, carried?.im].flatMap((plane) => (plane ? [pivoted(plane, pivot)] : []));
   const diagonal = new Float64Array(n);
   const offDiagonal = new Float64Array(Math.max(0, n - 1));
-  let u: Float64Array = new Float64Array(n);
+  let u: Float64Array = pivoted(start.re, pivot);
   let nextU: Float64Array = new Float64Array(n);
   const w = new Float64Array(n);
   const product = new Float64Array(n);
 
-  u.set(start.re);
   // e_1 of T is ±φ; the sign is given back to the carried vector at the end of the reduction.
   const signs = new Float64Array(n);
   signs[0] = reflector(u, 0) < 0 ? -1 : 1;

@@ -6,8 +6,8 @@
  * repeated while it takes a sizeable part of the vector away, which makes the basis orthogonal to rounding (common practice: twice is enough).
  *
  * When to stop. The residual at the step where the Krylov space is exhausted is rounding *amplified* by the iteration, 1e-8‖H‖ as a rule,
- * so no threshold on it tells the dimension. Instead the Ritz pairs are asked, at steps in geometric progression: a pair whose residual is
- * a few ε‖H‖ is a level of H. When the pairs that are not yet so carry, all together, no more weight of φ than the least weight that counts
+ * so no threshold on it tells the dimension. Instead the Ritz pairs are asked, at steps in geometric progression: one whose residual is below
+ * the merging distance is a level of H. When the pairs that are not yet so carry, all together, no more weight of φ than the least weight that counts
  * as bright, φ lies within a space that is invariant under H to rounding, and no level outside it can be bright. This also ends the
  * iteration early in localised regimes, where φ reaches few levels of many. An iteration that never gets there runs on to n.
  */
@@ -41,7 +41,7 @@ export function lanczos(
   const overlaps: [number, number][] = [];
   let q = scaled(start, 1 / Math.sqrt(squaredNorm(start)), complex);
   let previous: StateVector | null = null;
-  let complete = false;
+  let complete: boolean;
   let nextCheck = FIRST_CHECK;
   for (let k = 0; ; k += 1) {
     basisRe.push(q.re);
@@ -103,7 +103,7 @@ function converged(alpha: readonly number[], beta: readonly number[], residual: 
   last[m - 1] = 1;
   tridiagonalEigen(Float64Array.from(alpha), Float64Array.from(beta), [first, last]);
   // The floor of the merging distance: at any n, the residual leaves a level where it is.
-  const tolerance = mergingDistance(1, norm);
+  const tolerance = mergingDistance(n, norm);
   let open = 0;
   for (let k = 0; k < m; k += 1) if (residual * Math.abs(last[k]) > tolerance) open += first[k] * first[k];
   return open <= brightThreshold(n);
