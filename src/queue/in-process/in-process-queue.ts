@@ -63,7 +63,7 @@ export function openInProcessQueue(options: InProcessQueueOptions = {}): JobQueu
       entry.deliveries++;
       let again = false;
       try {
-        await handler(entry.job);
+        await handler(entry.job, { losses: 0 });
       } catch (error) {
         again = isRetryable(error) && entry.deliveries < attempts;
       }
