@@ -1,0 +1,217 @@
+/**
+ * Total detection probability and the exact moments of the first-detection number, without following the series.
+ *
+ * M = K(X∘M)K + S has the sums over all steps as its solution: with S = a a† it is M_1 = Σ_k R_k and Σ n F_n = tr M_1; with S = M_1 it is
+ * M_2 and Σ n² F_n = 2 tr M_2 − tr M_1. For Hermitian S it comes down to n real unknowns (derived in DEVELOPERS.md): in units of t_i t_j,
+ * with B = 1/(1 − X), C = X B, G_ij = S_ij − (S_ii + S_jj)/2 and s = tr S/η,
+ *
+ *     z_i (1 + κ Σ_j Re C_ij v_j) − κ Σ_j Re C_ij v_j z_j = Im Σ_j C_ij G_ij v_j
+ *     M_ij = B_ij (G_ij − iκ(z_i − z_j))                                                    off the diagonal
+ *     v_i M_ii = (κ² s + S_ii)/(2κ) − Re Σ_j C_ij G_ij v_j + κ Σ_j Im C_ij v_j (z_j − z_i)
+ *
+ * Re C ≥ −1/2, so the matrix in units of t is symmetric and ≥ 1/2: a Cholesky factorisation always exists and small gaps do not spoil it.
+ * G is formed from differences, so that levels whose elements agree add nothing however close they are. With a fixed interval
+ * Re C = −1/2 throughout and the inverse is known. O(n³) once (fixed: O(n²)), O(n²) for each further right-hand side.
+ *
+ * Measures are those of levels.ts: v > 0, Σ v = 1, merged where χ = 1.
+ */
+import { CholeskyDecomposition, Matrix } from 'ml-matrix';
+import type { IntervalDistribution } from '../schedules/types.js';
+import type { SpectralMeasure } from '../spectral/types.js';
+import { isReturn } from './levels.js';
+import { pairComplements, type PairTable } from './pairs.js';
+import { amplitudeReduction } from './stroboscopic.js';
+
+/** P = Σ |q_j|²/v_j over levels merged where χ = 1. (Dark states of quantum search cause imperfect detection, Phys. Rev. Research 2, 043107 (2020), 10.1103/PhysRevResearch.2.043107.) */
+export function detectionProbability(measure: SpectralMeasure): number {
+  if (isReturn(measure)) return 1;
+  const { weights, overlapRe, overlapIm } = measure;
+  const sum = weights.reduce(
+    (total, weight, i) => total + (overlapRe[i] / weight) * overlapRe[i] + ((overlapIm?.[i] ?? 0) / weight) * (overlapIm?.[i] ?? 0),
+    0,
+  );
+  return Math.min(1, sum);
+}
+
+/** Hermitian matrix in units of t_i t_j: packed upper half and diagonal. */
+export interface ScaledHermitian {
+  readonly re: Float64Array;
+  readonly im: Float64Array;
+  readonly diagonal: Float64Array;
+}
+
+/** A right-hand side: G packed, and the diagonal of S. */
+interface Source {
+  readonly re: Float64Array;
+  readonly im: Float64Array;
+  readonly diagonal: Float64Array;
+}
+
+export interface DetectionMoments {
+  /** mean of n given detection */
+  readonly mean: number;
+  /** variance of n given detection */
+  readonly variance: number;
+}
+
+/**
+ * Mean and variance of the number of measurements at the first click, given that it comes.
+ * For return the mean is (number of levels)/η (Recurrence for discrete time unitary evolutions, Commun. Math. Phys. 320, 543 (2013),
+ * 10.1007/s00220-012-1645-2, for η = 1 and a fixed interval).
+ * @returns null where P = 0
+ */
+export function detectionMoments(measure: SpectralMeasure, distribution: IntervalDistribution, efficiency = 1): DetectionMoments | null {
+  const n = measure.energies.length;
+  const probability = detectionProbability(measure);
+  if (!(probability > 0)) return null;
+  const solver = momentSolver(measure, distribution, efficiency);
+  if (isReturn(measure)) {
+    // M_1 = 1/η exactly, as K² = 1 − ηφφ†.
+    const first = measure.weights.map((weight) => 1 / (efficiency * weight));
+    const mean = n / efficiency;
+    const second = trace(solver.solve({ ...differences(first), diagonal: first }), measure.weights);
+    return { mean, variance: Math.max(0, 2 * second - mean - mean * mean) };
+  }
+  const first = solver.solve(preparedSource(measure));
+  const mean = trace(first, measure.weights) / probability;
+  const second = trace(solver.solve(asSource(first)), measure.weights) / probability;
+  return { mean, variance: Math.max(0, 2 * second - mean - mean * mean) };
+}
+
+export function trace(matrix: ScaledHermitian, weights: Float64Array): number {
+  return matrix.diagonal.reduce((sum, value, i) => sum + weights[i] * value, 0);
+}
+
+/** S = a a†. */
+export function preparedSource(measure: SpectralMeasure): Source {
+  const { weights, overlapRe, overlapIm } = measure;
+  const n = weights.length;
+  const aRe = overlapRe.map((value, i) => value / weights[i]);
+  const aIm = overlapIm?.map((value, i) => value / weights[i]) ?? new Float64Array(n);
+  const re = new Float64Array((n * (n - 1)) / 2);
+  const im = new Float64Array(re.length);
+  for (let i = 0, p = 0; i < n; i++) {
+    for (let j = i + 1; j < n; j++, p++) {
+      const dRe = aRe[i] - aRe[j];
+      const dIm = aIm[i] - aIm[j];
+      re[p] = -(dRe * dRe + dIm * dIm) / 2;
+      im[p] = dIm * aRe[j] - dRe * aIm[j];
+    }
+  }
+  return { re, im, diagonal: aRe.map((value, i) => value * value + aIm[i] * aIm[i]) };
+}
+
+/** G of a matrix without off-diagonal elements. */
+function differences(diagonal: Float64Array): Pick<Source, 're' | 'im'> {
+  const n = diagonal.length;
+  const re = new Float64Array((n * (n - 1)) / 2);
+  for (let i = 0, p = 0; i < n; i++) for (let j = i + 1; j < n; j++, p++) re[p] = -(diagonal[i] + diagonal[j]) / 2;
+  return { re, im: new Float64Array(re.length) };
+}
+
+/** S = a solution. */
+export function asSource(matrix: ScaledHermitian): Source {
+  const { re } = differences(matrix.diagonal);
+  for (let p = 0; p < re.length; p++) re[p] += matrix.re[p];
+  return { re, im: matrix.im, diagonal: matrix.diagonal };
+}
+
+export interface MomentSolver {
+  solve(source: Source): ScaledHermitian;
+}
+
+export function momentSolver(measure: SpectralMeasure, distribution: IntervalDistribution, efficiency: number): MomentSolver {
+  const { weights: v } = measure;
+  const n = v.length;
+  const kappa = amplitudeReduction(efficiency);
+  const { re: bRe, im: bIm } = inverses(pairComplements(measure, distribution));
+  const connection = distribution.random ? connectedMatrix(v, bRe, kappa) : uniformMatrix(v, kappa);
+  return {
+    solve(source) {
+      // h_i = Σ_j C_ij G_ij v_j
+      const hRe = new Float64Array(n);
+      const hIm = new Float64Array(n);
+      for (let i = 0, p = 0; i < n; i++) {
+        for (let j = i + 1; j < n; j++, p++) {
+          const re = (bRe[p] - 1) * source.re[p] - bIm[p] * source.im[p];
+          const im = (bRe[p] - 1) * source.im[p] + bIm[p] * source.re[p];
+          hRe[i] += re * v[j];
+          hIm[i] += im * v[j];
+          hRe[j] += re * v[i];
+          hIm[j] -= im * v[i];
+        }
+      }
+      const z = connection(hIm);
+      const s = source.diagonal.reduce((sum, value, i) => sum + v[i] * value, 0) / efficiency;
+      const held = source.diagonal.map((value, i) => (kappa * kappa * s + value) / (2 * kappa) - hRe[i]);
+      const re = new Float64Array(bRe.length);
+      const im = new Float64Array(bRe.length);
+      for (let i = 0, p = 0; i < n; i++) {
+        for (let j = i + 1; j < n; j++, p++) {
+          const turned = kappa * (z[i] - z[j]);
+          held[i] -= bIm[p] * v[j] * turned;
+          held[j] -= bIm[p] * v[i] * turned;
+          const gIm = source.im[p] - turned;
+          re[p] = bRe[p] * source.re[p] - bIm[p] * gIm;
+          im[p] = bRe[p] * gIm + bIm[p] * source.re[p];
+        }
+      }
+      return { re, im, diagonal: held.map((value, i) => value / v[i]) };
+    },
+  };
+}
+
+/** B = 1/(1 − X). */
+function inverses(pairs: PairTable): { readonly re: Float64Array; readonly im: Float64Array } {
+  const re = new Float64Array(pairs.re.length);
+  const im = new Float64Array(pairs.re.length);
+  for (let p = 0; p < re.length; p++) {
+    // Divided twice rather than by the square, which could underflow.
+    const size = Math.hypot(pairs.re[p], pairs.im[p]);
+    re[p] = pairs.re[p] / size / size;
+    im[p] = -pairs.im[p] / size / size;
+  }
+  return { re, im };
+}
+
+type LinearSolve = (right: Float64Array) => Float64Array;
+
+/** Re C = −1/2: z_i(1 − κ/2) + (κ/2) Σ_j v_j z_j = r_i, and Σ_i v_i z_i = Σ_i v_i r_i. */
+function uniformMatrix(v: Float64Array, kappa: number): LinearSolve {
+  return (right) => {
+    const mean = right.reduce((sum, value, i) => sum + v[i] * value, 0);
+    return right.map((value) => (value - (kappa / 2) * mean) / (1 - kappa / 2));
+  };
+}
+
+function connectedMatrix(v: Float64Array, bRe: Float64Array, kappa: number): LinearSolve {
+  const n = v.length;
+  const t = v.map(Math.sqrt);
+  const matrix = Matrix.zeros(n, n);
+  const diagonal = new Float64Array(n).fill(1);
+  for (let i = 0, p = 0; i < n; i++) {
+    for (let j = i + 1; j < n; j++, p++) {
+      const c = kappa * (bRe[p] - 1);
+      diagonal[i] += c * v[j];
+      diagonal[j] += c * v[i];
+      matrix.set(i, j, -c * t[i] * t[j]);
+      matrix.set(j, i, -c * t[i] * t[j]);
+    }
+  }
+  for (let i = 0; i < n; i++) matrix.set(i, i, diagonal[i]);
+  const factor = new CholeskyDecomposition(matrix);
+  return (right) => {
+    const scaled = factor.solve(Matrix.columnVector(right.map((value, i) => value * t[i])));
+    const z = t.map((value, i) => scaled.get(i, 0) / value);
+    // One Jacobi sweep: the division by a tiny t_i has magnified the error of its component; the equation itself gives it back.
+    const rest = right.slice();
+    for (let i = 0, p = 0; i < n; i++) {
+      for (let j = i + 1; j < n; j++, p++) {
+        const c = kappa * (bRe[p] - 1);
+        rest[i] += c * v[j] * z[j];
+        rest[j] += c * v[i] * z[i];
+      }
+    }
+    return rest.map((value, i) => value / diagonal[i]);
+  };
+}
