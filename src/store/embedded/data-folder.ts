@@ -9,7 +9,7 @@
  * others use it.
  */
 import { spawn } from 'node:child_process';
-import { chown, lstat, mkdir, mkdtemp, readFile, readdir, rename, rm, stat, symlink } from 'node:fs/promises';
+import { chown, lstat, mkdir, mkdtemp, readFile, readdir, realpath, rename, rm, stat, symlink } from 'node:fs/promises';
 import { basename, join } from 'node:path';
 import { WindrowError } from '../../core/errors.js';
 import type { Binaries } from './binaries.js';
@@ -46,10 +46,12 @@ export async function ensureDataFolder(options: DataFolderOptions): Promise<Data
   return existing(path, options);
 }
 
-async function existing(path: string, { binaries }: DataFolderOptions): Promise<DataFolder> {
-  const owner = await stat(path).catch((error: unknown) => {
-    throw fileError(error, 'find the data that the store links to', path);
+async function existing(name: string, { binaries }: DataFolderOptions): Promise<DataFolder> {
+  // The server's user may be able to enter the data, but not the folder with the link to them.
+  const path = await realpath(name).catch((error: unknown) => {
+    throw fileError(error, 'find the data that the store links to', name);
   });
+  const owner = await stat(path);
   if (!isRoot() && owner.uid !== process.getuid?.())
     throw new WindrowError('store.embedded', 'the store belongs to another user; run windrow as that user or as root', {
       where: path,

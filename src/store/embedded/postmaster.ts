@@ -117,7 +117,7 @@ async function makeSockets(user: ServerUser): Promise<string> {
   }
 }
 
-const SETTINGS: Readonly<Record<string, string>> = {
+export const SETTINGS: Readonly<Record<string, string>> = {
   listen_addresses: '',
   unix_socket_permissions: '0700',
   port: String(PORT),
@@ -148,7 +148,7 @@ export interface Started {
  * @param log file that gets what the server prints
  * @throws store.embedded, store.full
  */
-export async function startPostmaster(postgres: string, { path, user }: DataFolder, log: string, settings = SETTINGS): Promise<Started> {
+export async function startPostmaster(postgres: string, { path, user }: DataFolder, log: string, settings: Readonly<Record<string, string>> = SETTINGS): Promise<Started> {
   const sockets = await makeSockets(user);
   const output = await open(log, 'a').catch((error: unknown) => {
     throw fileError(error, 'write the log of the embedded server', log);

@@ -1,0 +1,125 @@
+/**
+ * PostgreSQL for tests: real servers only.
+ *
+ * Found in this order: TEST_DATABASE_URL (its user must be allowed to create databases); a container, where a container engine answers;
+ * the programs of the embedded store, started here on a free port of the loopback interface. A server started here keeps its files in
+ * a folder of its own and ends with the run; what a killed run left is cleared away by the next.
+ */
+import { spawnSync } from 'node:child_process';
+import { chmod, mkdtemp, readFile, readdir, rm, writeFile } from 'node:fs/promises';
+import { createServer, type AddressInfo } from 'node:net';
+import { tmpdir } from 'node:os';
+import { join } from 'node:path';
+import { setTimeout as sleep } from 'node:timers/promises';
+import { findPackage, prepareBinaries } from '../../src/store/embedded/binaries.js';
+import { ensureDataFolder } from '../../src/store/embedded/data-folder.js';
+import { readPostmaster, SETTINGS, startPostmaster, stopPostmaster } from '../../src/store/embedded/postmaster.js';
+
+export interface PostgresForTests {
+  /** of a user who may create databases */
+  readonly url: string;
+  /** where it comes from, for people */
+  readonly source: string;
+  stop(): Promise<void>;
+}
+
+export async function startPostgres(): Promise<PostgresForTests> {
+  const url = process.env.TEST_DATABASE_URL;
+  if (url !== undefined && url !== '') return { url, source: 'TEST_DATABASE_URL', stop: () => Promise.resolve() };
+  return (await inContainer()) ?? (await ownPostgres());
+}
+
+async function inContainer(): Promise<PostgresForTests | null> {
+  if (spawnSync('docker', ['info'], { stdio: 'ignore', timeout: 10_000 }).status !== 0) return null;
+  const { GenericContainer, Wait } = await import('testcontainers');
+  try {
+    const container = await new GenericContainer('postgres:17-alpine')
+      .withEnvironment({ POSTGRES_PASSWORD: 'windrow' })
+      .withExposedPorts(5432)
+      .withWaitStrategy(Wait.forLogMessage(/ready to accept connections/, 2))
+      .start();
+    return {
+      url: `postgresql://postgres:windrow@${container.getHost()}:${String(container.getMappedPort(5432))}/postgres`,
+      source: 'a container of postgres:17-alpine',
+      stop: async () => {
+        await container.stop();
+      },
+    };
+  } catch (error) {
+    console.warn(`PostgreSQL for tests: the container engine answers but starts no container (${String(error)})`);
+    return null;
+  }
+}
+
+export interface OwnPostgresOptions {
+  /** lines put before the server's own access rules (pg_hba.conf) */
+  readonly access?: string;
+  readonly settings?: Readonly<Record<string, string>>;
+}
+
+/** A server of the caller's own, to be killed or configured. */
+export async function ownPostgres({ access = '', settings = {} }: OwnPostgresOptions = {}): Promise<PostgresForTests> {
+  await clearAbandoned();
+  const folder = await mkdtemp(join(tmpdir(), `${FOLDER}${process.pid}-`));
+  // As root, the server runs as another user, who must be able to enter.
+  await chmod(folder, 0o755);
+  const binaries = prepared();
+  const data = await ensureDataFolder({ folder, elsewhere: folder, binaries, onNotice: () => undefined });
+  const rules = join(data.path, 'pg_hba.conf');
+  await writeFile(rules, `${access}\n${await readFile(rules, 'utf8')}`);
+  const { postgres } = await binaries(data.user);
+  const log = join(folder, 'server.log');
+  const port = await freePort();
+  // Tests that look at durability use the embedded store, which does sync.
+  const own = { ...SETTINGS, listen_addresses: '127.0.0.1', port: String(port), fsync: 'off', ...settings };
+  const started = await startPostmaster(postgres, data, log, own);
+  while ((await readPostmaster(data.path))?.ready !== true)
+    if ((await Promise.race([started.ended, sleep(20)])) === 'ended')
+      throw new Error(`PostgreSQL for tests does not start: ${await readFile(log, 'utf8')}`);
+  started.release();
+  return {
+    url: `postgresql://windrow@127.0.0.1:${String(port)}/postgres`,
+    source: 'the programs of the embedded store',
+    stop: async () => {
+      await stopPostmaster(data.path);
+      await rm(folder, { recursive: true, force: true });
+    },
+  };
+}
+
+function prepared() {
+  const found = findPackage();
+  return async (user: Parameters<typeof prepareBinaries>[1]) => prepareBinaries(await found, user);
+}
+
+const FOLDER = 'windrow-postgres-';
+
+async function clearAbandoned(): Promise<void> {
+  for (const name of await readdir(tmpdir())) {
+    const pid = Number(new RegExp(`^${FOLDER}(\\d+)-`).exec(name)?.[1] ?? NaN);
+    if (!Number.isInteger(pid) || isAlive(pid)) continue;
+    const folder = join(tmpdir(), name);
+    await stopPostmaster(join(folder, 'data'));
+    await rm(folder, { recursive: true, force: true });
+  }
+}
+
+export function isAlive(pid: number): boolean {
+  try {
+    process.kill(pid, 0);
+    return true;
+  } catch (error) {
+    return (error as NodeJS.ErrnoException).code === 'EPERM';
+  }
+}
+
+export function freePort(): Promise<number> {
+  return new Promise((resolve, reject) => {
+    const server = createServer();
+    server.once('error', reject);
+    server.listen(0, '127.0.0.1', () => {
+      const { port } = server.address() as AddressInfo;
+      server.close(() => resolve(port));
+    });
+  });
+}
