@@ -5,7 +5,6 @@
  * Guarantees of a built system: φ has norm 1, ψ is the same object as φ for the return problem, every number is finite.
  */
 import { canonicalJson } from '../core/json.js';
-import type { Json } from '../core/json.js';
 import { WindrowError } from '../core/errors.js';
 import type { HermitianMatrix, StateVector } from '../linalg/matrix.js';
 import { checkCommon } from './request.js';
@@ -51,7 +50,7 @@ function stateSpace<P>(definition: FamilyDefinition<P>, request: SystemRequest<P
       if (state === undefined) throw refusal('state.unknown', `${definition.name} has no state "${name}"`, where, name, names.join(', '));
       const terms = state.terms(request);
       if (terms === null)
-        throw refusal('state.invalid', `the state ${name} does not fit this system`, where, name, `${state.needs ?? 'another system'}`);
+        throw refusal('state.invalid', `the state ${name} does not fit this system`, where, name, state.needs ?? 'another system');
       return terms;
     },
   };
@@ -108,7 +107,7 @@ export function defineFamily<P>(definition: FamilyDefinition<P>): ModelFamily<P>
         parameters: definition.complete?.(request.parameters, request.size) ?? request.parameters,
         disorder: request.disorder?.strength === 0 ? null : request.disorder,
         prepared,
-        detected: canonicalJson(detected as Json) === canonicalJson(prepared as Json) ? 'same' : detected,
+        detected: canonicalJson(detected) === canonicalJson(prepared) ? 'same' : detected,
       };
     },
     extent(request) {

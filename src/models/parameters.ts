@@ -22,7 +22,7 @@ interface SchemaNode {
   readonly description?: string;
   readonly default?: Json;
   readonly const?: Json;
-  readonly enum?: readonly Json[];
+  readonly enum?: readonly (string | number)[];
   readonly anyOf?: readonly SchemaNode[];
   readonly items?: SchemaNode;
   readonly minimum?: number;
@@ -43,7 +43,7 @@ function boundsOf(node: SchemaNode): string {
 
 function allowedBy(node: SchemaNode): string {
   if (node.anyOf !== undefined) return node.anyOf.map(allowedBy).join(', or ');
-  if (node.enum !== undefined) return node.enum.map((value) => String(value)).join(' | ');
+  if (node.enum !== undefined) return node.enum.join(' | ');
   if (node.const !== undefined) return showValue(node.const);
   if (node.type === 'integer') return `a whole number${boundsOf(node)}`;
   if (node.type === 'number') return `a finite number${boundsOf(node)}`;
@@ -93,7 +93,7 @@ export function parseParameters<P>(family: ModelFamily<P>, raw: unknown = {}): P
   const parsed = family.parameters.safeParse(raw);
   if (parsed.success) return parsed.data;
   const issue = parsed.error.issues[0];
-  throw issue === undefined ? parsed.error : parameterRefusal(family as ModelFamily, raw, issue);
+  throw issue === undefined ? parsed.error : parameterRefusal(family, raw, issue);
 }
 
 /**
