@@ -94,7 +94,7 @@ export async function runSweep(run: SweepRun): Promise<SweepSummary> {
         jobPoints: run.jobPoints,
         signal: halted.signal,
         onReused: reused.count,
-        latest: tracker.latest,
+        latest: () => tracker.latest(),
         lastFault: () => lastFault,
       });
     } finally {
