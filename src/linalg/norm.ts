@@ -14,8 +14,8 @@ export function normBound(matrix: HermitianMatrix): number {
   forEachElement(matrix, (row, _column, re, im) => {
     const size = im === 0 ? Math.abs(re) : Math.hypot(re, im);
     rowSum[row] += size;
-    // NaN compares false with everything, so it is let through by the negation.
-    if (!(size <= largest)) largest = size;
+    // Math.max keeps NaN.
+    largest = Math.max(largest, size);
   });
   if (largest === 0 || !Number.isFinite(largest)) return largest;
   let squares = 0;
