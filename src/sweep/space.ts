@@ -46,7 +46,12 @@ export function sweepSpace(document: SweepDocument): SweepSpace {
       unit: '',
       key: ['parameters', name],
     })),
-    { name: 'disorder', values: disorder?.strength.values ?? [0], unit: 'full width W of the on-site energies', key: ['disorder', 'strength'] },
+    {
+      name: 'disorder',
+      values: disorder?.strength.values ?? [0],
+      unit: 'full width W of the on-site energies',
+      key: ['disorder', 'strength'],
+    },
     { name: 'realisation', values: realisations, unit: '', key: ['disorder', 'realisations'] },
     { name: 'prepare', values: document.prepare.values, unit: '', key: ['prepare'] },
     { name: 'detect', values: document.detect.values, unit: '', key: ['detect'] },
