@@ -10,11 +10,11 @@
  * be counted by the hosts' clocks, which may differ by hours, and a worker that has lost its store should slow down anyway.
  */
 import { UnrecoverableError, WaitingError, Worker, type Job as Parcel } from 'bullmq';
-import type { Redis } from 'ioredis';
 import type { WindrowError } from '../../core/errors.js';
 import { backoffDelay, isRetryable, pause } from '../../core/retry.js';
 import { checkVersion, parseJob } from '../job-form.js';
 import type { Consumer, Delivery, Job } from '../types.js';
+import { createAside, type Aside } from './aside.js';
 import { connect, connectFirst, type RedisServer } from './redis-connection.js';
 import { createSlots } from './slots.js';
 
@@ -43,8 +43,6 @@ export interface ConsumeOptions {
 const MOST_LOSSES = 1000;
 /** What a closing consumer allows Redis for the last acknowledgements before it lets go of the connection, milliseconds. */
 const FAREWELL_MS = 2_000;
-/** Payloads kept aside. */
-const KEPT_ASIDE = 100;
 
 type Handler = (job: Job, delivery: Delivery) => Promise<void>;
 
@@ -55,12 +53,13 @@ export async function consumeLanes(handler: Handler, options: ConsumeOptions): P
   /** aborted first: take nothing new and end pauses; then, when the grace is over: give back what runs */
   const closing = new AbortController();
   const abandoned = new AbortController();
-  const slots = createSlots(options.concurrency, abandoned.signal);
+  const aside = createAside(client, options.prefix, options.onWarning);
+  const slots = createSlots(options.concurrency, closing.signal);
 
   const deliver = async (parcel: Parcel, token?: string): Promise<void> => {
     // A parcel put here by hand may ask to be kept when it has ended, and would then swallow every later job of its name.
     Object.assign(parcel.opts, { removeOnComplete: true, removeOnFail: true });
-    const job = await opened(parcel, client, options);
+    const job = await opened(parcel, options, aside);
     const released = await slots.take();
     try {
       const ended = released === null ? 'abandoned' : await unlessAborted(handled(job, parcel, handler, closing.signal), abandoned.signal);
@@ -82,8 +81,10 @@ export async function consumeLanes(handler: Handler, options: ConsumeOptions): P
       stalledInterval: searchMs,
       maxStalledCount: MOST_LOSSES,
     });
-    // Lost connections and late acknowledgements: BullMQ goes on by itself.
-    worker.on('error', () => undefined);
+    worker.on('error', (error) => {
+      // Lost connections and late acknowledgements: BullMQ goes on by itself. What it cannot even parse it would meet again and again.
+      if (error instanceof SyntaxError) void aside.putUnreadable(worker).catch(() => undefined);
+    });
     return worker;
   });
   await Promise.all(workers.map((worker) => worker.waitUntilReady()));
@@ -112,22 +113,14 @@ export async function consumeLanes(handler: Handler, options: ConsumeOptions): P
 }
 
 /** The job in a parcel. @throws UnrecoverableError after setting aside what is none */
-async function opened(parcel: Parcel, client: Redis, { prefix, methodVersion, onWarning }: ConsumeOptions): Promise<Job> {
+async function opened(parcel: Parcel, { methodVersion }: ConsumeOptions, aside: Aside): Promise<Job> {
   try {
     const job = parseJob(parcel.data);
     checkVersion(job, methodVersion);
     return job;
   } catch (error) {
-    const { message, code } = error as WindrowError;
-    const where = (error as WindrowError).details.where ?? '';
-    onWarning(`set aside ${String(parcel.id)} (${code}): ${message}${where === '' ? '' : ` at ${where}`}`);
-    const record = JSON.stringify({ id: parcel.id, code, message, where, data: parcel.data as unknown });
-    await client
-      .multi()
-      .lpush(`${prefix}:aside`, record)
-      .ltrim(`${prefix}:aside`, 0, KEPT_ASIDE - 1)
-      .exec();
-    throw new UnrecoverableError(message);
+    await aside.put(parcel.id ?? '', parcel.data, error as WindrowError);
+    throw new UnrecoverableError((error as WindrowError).message);
   }
 }
 

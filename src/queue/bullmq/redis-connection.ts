@@ -67,18 +67,20 @@ export async function connectFirst(client: Redis, where: string): Promise<void> 
 export function toQueueError(error: unknown, where: string): WindrowError {
   if (error instanceof WindrowError) return error;
   const text = error instanceof Error ? error.message : String(error);
+  // The driver's own error carries the request with its arguments: a password, or a whole job.
+  const cause = new Error(text);
   // EXECABORT: a transaction of which one command was refused for want of memory.
   if (/^OOM |EXECABORT|used memory > 'maxmemory'/.test(text)) {
     return new WindrowError('queue.full', 'Redis has reached its memory limit and takes no new jobs', {
       where,
       allowed: 'a larger maxmemory, or a wait until workers have taken jobs away',
-      cause: error,
+      cause,
     });
   }
   if (/^(WRONGPASS|NOAUTH|NOPERM)|invalid password/i.test(text)) {
-    return new WindrowError('queue.refused', 'Redis refuses the user, the password or a right', { where, found: text, cause: error });
+    return new WindrowError('queue.refused', 'Redis refuses the user, the password or a right', { where, found: text, cause });
   }
-  return new WindrowError('queue.unreachable', `Redis cannot be reached: ${text}`, { where, cause: error });
+  return new WindrowError('queue.unreachable', `Redis cannot be reached: ${text}`, { where, cause });
 }
 
 /** Requests of a connection as errors of the catalogue. */
