@@ -22,6 +22,9 @@ export interface PhaseMap {
 export interface MapAxes {
   readonly x: string;
   readonly y: string;
+  /** Values of the sweep's axes, so that cells which nobody has reached yet are there as `missing`; those of the samples when absent. */
+  readonly xValues?: readonly (number | string)[];
+  readonly yValues?: readonly (number | string)[];
 }
 
 const MISSING = { state: 'missing', value: null, error: null, count: 0, sensitive: false } as const;
@@ -32,17 +35,18 @@ function distinct(values: Iterable<number | string>): (number | string)[] {
 
 function mapOf(curves: readonly Curve[], axes: MapAxes): PhaseMap {
   const [first] = curves as readonly [Curve, ...Curve[]];
-  const xs = distinct(curves.flatMap(({ points }) => points.map(({ x }) => x)));
-  const rows = [...curves].sort((a, b) => ascending(a.at[axes.y] as number, b.at[axes.y] as number));
+  const xs = distinct([...(axes.xValues ?? []), ...curves.flatMap(({ points }) => points.map(({ x }) => x))]);
+  const rows = new Map(curves.map((curve) => [curve.at[axes.y] as number | string, curve]));
+  const ys = distinct([...(axes.yValues ?? []), ...rows.keys()]);
   return {
     questionOrdinal: first.questionOrdinal,
     question: first.question,
     resolution: curves.find(({ resolution }) => resolution !== null)?.resolution ?? null,
     at: otherAxes(first.at, [axes.y]),
     x: { axis: axes.x, values: xs },
-    y: { axis: axes.y, values: rows.map(({ at }) => at[axes.y] as number | string) },
-    cells: rows.map(({ points }) => {
-      const known = new Map(points.map((point) => [point.x, point]));
+    y: { axis: axes.y, values: ys },
+    cells: ys.map((y) => {
+      const known = new Map(rows.get(y)?.points.map((point) => [point.x, point]));
       return xs.map((x) => known.get(x) ?? { x, ...MISSING });
     }),
   };

@@ -23,7 +23,7 @@ import {
 } from './figure-parts.js';
 import { keyMarks } from './figure-key.js';
 import { coordinatesText, scheduleText } from './format.js';
-import { panelTitle, quantityTitle, resolutionText, type SweepLabels } from './labels.js';
+import { panelTitle, quantityTitle, resolutionText, type SweepLabels, unitSentences } from './labels.js';
 
 export interface CutFigure {
   readonly curves: readonly Curve[];
@@ -57,14 +57,14 @@ function pick(at: Coordinates, axes: readonly string[], inside: boolean): Coordi
   return Object.fromEntries(Object.entries(at).filter(([axis]) => axes.includes(axis) === inside));
 }
 
-function panelsOf(curves: readonly Curve[], energyUnit: string): Panel[] {
+function panelsOf(curves: readonly Curve[]): Panel[] {
   const free = varying(curves);
   const questions = [...groupBy(curves, ({ questionOrdinal }) => String(questionOrdinal)).values()];
   const common = coordinatesText(pick(curves[0]?.at ?? {}, free, false));
   if (questions.length > 1 && questions.every((list) => list.length === 1)) {
     const lines = questions.flat().map((curve) => ({
       curve,
-      label: `${scheduleText(curve.question.schedule)}; ${resolutionText(curve.question, curve.resolution, energyUnit)}`,
+      label: `${scheduleText(curve.question.schedule)}; ${resolutionText(curve.question, curve.resolution)}`,
     }));
     return [{ head: common === '' ? [] : [common], lines }];
   }
@@ -74,7 +74,7 @@ function panelsOf(curves: readonly Curve[], energyUnit: string): Panel[] {
     return {
       head: [
         ...wrapText(keepTogether(letter + panelTitle(first.question, pick(first.at, free, false))), PANEL.width + 20, 12),
-        resolutionText(first.question, first.resolution, energyUnit),
+        resolutionText(first.question, first.resolution),
       ],
       lines: list.map((curve) => ({ curve, label: coordinatesText(pick(curve.at, free, true)) || 'value' })),
     };
@@ -166,7 +166,7 @@ function panelMark(figure: CutFigure, panels: readonly Panel[], panel: number, c
         tickCount: 6,
         grid: true,
         gridColor: '#ececec',
-        ...(column === 0 ? { title: quantityTitle(figure.quantity, figure.labels.energyUnit) } : {}),
+        ...(column === 0 ? { title: quantityTitle(figure.quantity) } : {}),
       },
     ],
     marks: curveMarks(panel),
@@ -187,7 +187,7 @@ function valueScale(curves: readonly Curve[]): { type: 'linear' | 'log'; domain:
 /** @returns a complete Vega specification; its size follows from the number of panels and lines */
 export function cutFigureSpec(figure: CutFigure): Spec {
   const { curves, labels, quantity } = figure;
-  const panels = panelsOf(curves, labels.energyUnit);
+  const panels = panelsOf(curves);
   const names = [...new Set(panels.flatMap(({ lines }) => lines.map(({ label }) => label)))];
   const columns = Math.min(COLUMNS, Math.max(1, panels.length));
   const rows = Math.ceil(panels.length / columns);
@@ -207,7 +207,7 @@ export function cutFigureSpec(figure: CutFigure): Spec {
   const sentences = [
     `${labels.sweep}: ${quantity.name.replaceAll('_', ' ')} of ${labels.model} along ${figure.along}.`,
     ...figure.notes,
-    'K is the number of measurements; levels closer than δ count as one, and groups of total weight below ε are left out.',
+    ...unitSentences(labels),
   ];
   const caption = wrapText(sentences.join(' '), captionWidth, CAPTION_SIZE);
   const lineHeight = CAPTION_SIZE * 1.4;

@@ -24,7 +24,7 @@ import {
   wrapText,
 } from './figure-parts.js';
 import { keyMarks, type KeyEntry } from './figure-key.js';
-import { panelTitle, quantityTitle, resolutionText, type SweepLabels } from './labels.js';
+import { panelTitle, quantityTitle, resolutionText, type SweepLabels, unitSentences } from './labels.js';
 
 export interface PhaseDiagram {
   /** At most PANEL_LIMIT; see `pagesOf`. */
@@ -200,7 +200,7 @@ function panelHead(figure: PhaseDiagram, map: PhaseMap, panel: number): string[]
   const letter = figure.maps.length > 1 ? `(${String.fromCharCode(97 + panel)}) ` : '';
   return [
     ...wrapText(keepTogether(letter + panelTitle(map.question, map.at)), PANEL.width + PANEL.gapX / 2, 12),
-    resolutionText(map.question, map.resolution, figure.labels.energyUnit),
+    resolutionText(map.question, map.resolution),
   ];
 }
 
@@ -262,7 +262,7 @@ export function phaseDiagramSpec(figure: PhaseDiagram): Spec {
     `${labels.sweep}: ${quantity.name.replaceAll('_', ' ')} of ${labels.model}.`,
     ...(drawn ? [`Boundary: ${figure.boundaryText}.`] : []),
     ...figure.notes,
-    'K is the number of measurements; levels closer than δ count as one, and groups of total weight below ε are left out.',
+    ...unitSentences(labels),
   ];
   const caption = wrapText(sentences.join(' '), width + COLOUR_BAR, CAPTION_SIZE);
   const lineHeight = CAPTION_SIZE * 1.4;
@@ -298,7 +298,7 @@ export function phaseDiagramSpec(figure: PhaseDiagram): Spec {
         orient: 'none',
         legendX: width + 22,
         legendY: 0,
-        title: wrapText(quantityTitle(quantity, labels.energyUnit), COLOUR_BAR - 26, 12),
+        title: wrapText(quantityTitle(quantity), COLOUR_BAR - 26, 12),
         gradientLength: PANEL.height - 50,
         gradientThickness: 14,
         tickCount: 6,

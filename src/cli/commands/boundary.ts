@@ -1,0 +1,49 @@
+/** `windrow boundary NAME`: the coupling at which an order parameter changes, as a bracket for each size and question. */
+import type { Command } from 'commander';
+import { requireAxis } from '../../analysis/curves.js';
+import {
+  BOUNDARY_COLUMNS,
+  boundariesOf,
+  boundaryChoice,
+  boundaryOptions,
+  type BoundaryOptions,
+  boundaryRow,
+  boundaryTable,
+} from '../boundary-options.js';
+import { openStore } from '../compose.js';
+import { EXIT, type Io } from '../context.js';
+import { collect, parsePlace, parseQuestions, storeOption, verb } from '../options.js';
+import { print } from '../print.js';
+import { runVerb } from '../run-verb.js';
+import { readSamples, readStoredSweep } from '../stored-sweep.js';
+
+interface Options extends BoundaryOptions {
+  readonly along: string;
+  readonly question?: string;
+  readonly at?: string[];
+}
+
+export function boundaryCommand(program: Command, io: Io): void {
+  const command = verb(program, 'boundary', 'where an order parameter crosses a level or changes most steeply, as brackets')
+    .argument('<name>', 'name of the sweep')
+    .option('--along <axis>', 'numeric axis to search along', 'coupling')
+    .option('--question <numbers>', 'only these questions, such as 0,2')
+    .option('--at <axis=value>', 'only this value of an axis; may be repeated', collect);
+  storeOption(boundaryOptions(command)).action(
+    runVerb<[string], Options>(io, {}, async (context, options, name) => {
+      const choice = boundaryChoice(options);
+      const selection = { questions: parseQuestions(options.question), at: parsePlace('--at', options.at) };
+      const store = await openStore(context);
+      const sweep = await readStoredSweep(store, name);
+      const samples = await readSamples(store, sweep, choice.quantity, selection);
+      requireAxis(samples, options.along);
+      const boundaries = boundariesOf(samples, choice, options.along);
+      await print(context, {
+        table: () => `Boundary of ${name} along ${sweep.labels.axisTitle(options.along)}; ${choice.words}\n\n${boundaryTable(boundaries)}`,
+        json: () => boundaries.map(boundaryRow),
+        csv: () => ({ columns: BOUNDARY_COLUMNS, rows: boundaries.map(boundaryRow) }),
+      });
+      return EXIT.done;
+    }),
+  );
+}

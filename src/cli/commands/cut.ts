@@ -1,0 +1,97 @@
+/** `windrow cut NAME`: one quantity along one axis, at chosen values of others. */
+import type { Command } from 'commander';
+import { type Curve, curvesOf } from '../../analysis/curves.js';
+import { findQuantity, type Quantity } from '../../analysis/quantities.js';
+import type { Json } from '../../core/json.js';
+import { cutFigureSpec } from '../../report/cut-figure.js';
+import { coordinatesText, formatNumber, scheduleText } from '../../report/format.js';
+import { quantityTitle } from '../../report/labels.js';
+import { writeFigure } from '../../report/render-figure.js';
+import { renderTable } from '../../report/table.js';
+import { openStore } from '../compose.js';
+import { EXIT, type Io, say } from '../context.js';
+import { collect, parsePlace, parseQuestions, storeOption, verb } from '../options.js';
+import { print } from '../print.js';
+import { runVerb } from '../run-verb.js';
+import { readSamples, readStoredSweep } from '../stored-sweep.js';
+
+interface Options {
+  readonly field: string;
+  readonly along?: string;
+  readonly at?: string[];
+  readonly question?: string;
+  readonly figures?: string;
+}
+
+const SIGNS = { value: '', doubtful: ' ~', 'undefined-value': '', failed: 'failed', missing: '?' } as const;
+
+/** One row a point, so that any number of curves fits. */
+function cutRows(curves: readonly Curve[], along: string, quantity: Quantity): { columns: string[]; rows: { [column: string]: Json }[] } {
+  const axes = Object.keys(curves[0]?.at ?? {});
+  const rows = curves.flatMap(({ questionOrdinal, question, at, points }) =>
+    points.map(({ x, value, error, count, state }) => ({
+      question: questionOrdinal,
+      schedule: question.schedule as Json,
+      budget: question.budget,
+      ...at,
+      [along]: x,
+      [quantity.name]: value,
+      error,
+      count,
+      state,
+    })),
+  );
+  return { columns: ['question', 'schedule', 'budget', ...axes, along, quantity.name, 'error', 'count', 'state'], rows };
+}
+
+function cutText(curves: readonly Curve[], along: string, quantity: Quantity): string {
+  return curves
+    .map(({ question, at, points }) => {
+      const place = coordinatesText(at);
+      const head = `${quantityTitle(quantity)} · ${scheduleText(question.schedule)}, budget ${question.budget}${place === '' ? '' : ` · ${place}`}`;
+      const table = renderTable(points, [
+        { title: along, value: ({ x }) => (typeof x === 'number' ? formatNumber(x, 6) : x), align: 'right' },
+        {
+          title: quantity.name,
+          value: ({ value, state }) => `${value === null ? '' : formatNumber(value, 6)}${SIGNS[state]}` || '–',
+          align: 'right',
+        },
+        ...(points.some(({ error }) => error !== null)
+          ? [{ title: '±', value: ({ error }: { error: number | null }) => formatNumber(error, 2), align: 'right' as const }]
+          : []),
+      ]);
+      return `${head}\n${table}`;
+    })
+    .join('\n\n');
+}
+
+export function cutCommand(program: Command, io: Io): void {
+  const command = verb(program, 'cut', 'one quantity along one axis')
+    .argument('<name>', 'name of the sweep')
+    .option('--field <name>', 'a numeric field of the results or an order parameter', 'winding_number')
+    .option('--along <axis>', 'axis of the cut; coupling, or size where --at fixes the coupling')
+    .option('--at <axis=value>', 'only this value of another axis, such as size=12; may be repeated', collect)
+    .option('--question <numbers>', 'only these questions, such as 0,2')
+    .option('--figures <folder>', 'also write the figure there, as SVG and PNG');
+  storeOption(command).action(
+    runVerb<[string], Options>(io, {}, async (context, options, name) => {
+      const quantity = findQuantity(options.field);
+      const at = parsePlace('--at', options.at);
+      const along = options.along ?? ('coupling' in at ? 'size' : 'coupling');
+      const store = await openStore(context);
+      const sweep = await readStoredSweep(store, name);
+      const curves = curvesOf(await readSamples(store, sweep, quantity, { questions: parseQuestions(options.question), at }), along);
+      await print(context, {
+        table: () => cutText(curves, along, quantity),
+        json: () => cutRows(curves, along, quantity).rows,
+        csv: () => cutRows(curves, along, quantity),
+      });
+      if (options.figures !== undefined) {
+        const spec = cutFigureSpec({ curves, along, quantity, labels: sweep.labels, notes: sweep.notes });
+        const file = `cut-${quantity.name.replaceAll('_', '-')}`;
+        for (const path of await writeFigure(spec, options.figures, file)) say(context, `wrote ${path}`);
+      }
+      return EXIT.done;
+    }),
+  );
+}

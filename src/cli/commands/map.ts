@@ -1,0 +1,50 @@
+/** `windrow map NAME`: one quantity over two axes of a sweep. */
+import type { Command } from 'commander';
+import { findQuantity } from '../../analysis/quantities.js';
+import { boundaryChoice, boundaryOptions, type BoundaryOptions } from '../boundary-options.js';
+import { openStore } from '../compose.js';
+import { EXIT, type Io, say } from '../context.js';
+import { mapDocument, mapRows, mapText, readMapView, writeMapFigures } from '../map-view.js';
+import { collect, parsePlace, parseQuestions, storeOption, verb } from '../options.js';
+import { print } from '../print.js';
+import { runVerb } from '../run-verb.js';
+import { readStoredSweep } from '../stored-sweep.js';
+
+interface MapOptions extends BoundaryOptions {
+  readonly field: string;
+  readonly x: string;
+  readonly y: string;
+  readonly question?: string;
+  readonly at?: string[];
+  readonly figures?: string;
+}
+
+export function mapCommand(program: Command, io: Io): void {
+  const command = verb(program, 'map', 'one quantity over size and coupling, or any two axes')
+    .argument('<name>', 'name of the sweep')
+    .option('--field <name>', 'a numeric field of the results or an order parameter', 'winding_number')
+    .option('--x <axis>', 'axis to the right', 'coupling')
+    .option('--y <axis>', 'axis upwards', 'size')
+    .option('--question <numbers>', 'only these questions, such as 0,2')
+    .option('--at <axis=value>', 'only this value of an axis; may be repeated', collect)
+    .option('--figures <folder>', 'also write the phase diagrams there, as SVG and PNG');
+  storeOption(boundaryOptions(command)).action(
+    runVerb<[string], MapOptions>(io, {}, async (context, options, name) => {
+      const quantity = findQuantity(options.field);
+      const choice = boundaryChoice(options);
+      const selection = { questions: parseQuestions(options.question), at: parsePlace('--at', options.at) };
+      const store = await openStore(context);
+      const sweep = await readStoredSweep(store, name);
+      const view = await readMapView(store, sweep, quantity, choice, options, selection);
+      await print(context, {
+        table: () => mapText(view, context),
+        json: () => mapDocument(view),
+        csv: () => mapRows(view),
+      });
+      if (options.figures !== undefined) {
+        for (const path of await writeMapFigures(view, options.figures)) say(context, `wrote ${path}`);
+      }
+      return EXIT.done;
+    }),
+  );
+}

@@ -1,0 +1,125 @@
+/** `windrow status [NAME]`: the sweeps of the store, or one of them with its questions and failures. */
+import type { Command } from 'commander';
+import type { Json } from '../../core/json.js';
+import { formatCount, formatNumber, scheduleText } from '../../report/format.js';
+import { renderPairs, renderTable } from '../../report/table.js';
+import type { ResultStore, SweepProgress, SweepRecord } from '../../store/types.js';
+import { openStore, storeText } from '../compose.js';
+import { type Context, EXIT, type Io } from '../context.js';
+import { storeOption, verb } from '../options.js';
+import { print } from '../print.js';
+import { runVerb } from '../run-verb.js';
+import { failureTable } from '../run-and-report.js';
+import { findStoredSweep } from '../stored-sweep.js';
+
+interface Entry {
+  readonly record: SweepRecord;
+  readonly cells: number;
+  readonly progress: SweepProgress;
+}
+
+async function entryOf(store: ResultStore, record: SweepRecord): Promise<Entry> {
+  return { record, cells: record.points * record.questions.length, progress: await store.progress(record.name) };
+}
+
+const COLUMNS = [
+  'sweep',
+  'state',
+  'points',
+  'cells',
+  'stored_points',
+  'stored_cells',
+  'failed_points',
+  'method_version',
+  'created',
+  'updated',
+] as const;
+
+function rowOf({ record, cells, progress }: Entry): { readonly [key in (typeof COLUMNS)[number]]: Json } {
+  return {
+    sweep: record.name,
+    state: record.state,
+    points: record.points,
+    cells,
+    stored_points: progress.storedPoints,
+    stored_cells: progress.storedCells,
+    failed_points: progress.failedPoints,
+    method_version: record.methodVersion,
+    created: record.created,
+    updated: record.updated,
+  };
+}
+
+async function printList(context: Context, entries: readonly Entry[]): Promise<void> {
+  await print(context, {
+    table: () =>
+      entries.length === 0
+        ? `No sweeps in ${storeText(context.settings)}.`
+        : renderTable(entries, [
+            { title: 'sweep', value: ({ record }) => record.name },
+            { title: 'state', value: ({ record }) => record.state },
+            { title: 'points', value: ({ record }) => formatCount(record.points), align: 'right' },
+            { title: 'cells', value: ({ cells }) => formatCount(cells), align: 'right' },
+            { title: 'stored', value: ({ progress }) => formatCount(progress.storedCells), align: 'right' },
+            { title: 'failed points', value: ({ progress }) => formatCount(progress.failedPoints), align: 'right' },
+            { title: 'updated', value: ({ record }) => record.updated },
+          ]),
+    json: () => entries.map(rowOf),
+    csv: () => ({ columns: COLUMNS, rows: entries.map(rowOf) }),
+  });
+}
+
+function detailText({ record, cells, progress }: Entry): string {
+  const pairs = renderPairs([
+    ['sweep', record.name],
+    ['state', record.state],
+    ['points', `${formatCount(progress.storedPoints)} of ${formatCount(record.points)} stored`],
+    ['cells', `${formatCount(progress.storedCells)} of ${formatCount(cells)} stored`],
+    ['failed', `${formatCount(progress.failedPoints)} points`],
+    ['created', record.created],
+    ['updated', record.updated],
+    ['method', record.methodVersion],
+  ]);
+  const questions = renderTable(record.questions, [
+    { title: 'question', value: ({ ordinal }) => String(ordinal), align: 'right' },
+    { title: 'schedule', value: ({ question }) => scheduleText(question.schedule) },
+    { title: 'budget', value: ({ question }) => formatCount(question.budget), align: 'right' },
+    {
+      title: 'resolution (energy, weight)',
+      value: ({ question }) => `${resolution(question.resolution.energy)}, ${resolution(question.resolution.weight)}`,
+    },
+    { title: 'efficiency', value: ({ question }) => formatNumber(question.detector.efficiency), align: 'right' },
+  ]);
+  return [pairs, questions, ...(progress.failures.length === 0 ? [] : [failureTable(progress.failures)])].join('\n\n');
+}
+
+const resolution = (value: 'auto' | number): string => (value === 'auto' ? value : formatNumber(value));
+
+export function statusCommand(program: Command, io: Io): void {
+  const command = verb(program, 'status', 'sweeps in the store; with a name, its questions and failures').argument(
+    '[name]',
+    'name of a sweep',
+  );
+  storeOption(command).action(
+    runVerb<[string | undefined], object>(io, {}, async (context, _options, name) => {
+      const store = await openStore(context);
+      if (name === undefined) {
+        const entries: Entry[] = [];
+        for (const record of await store.listSweeps()) entries.push(await entryOf(store, record));
+        await printList(context, entries);
+        return EXIT.done;
+      }
+      const entry = await entryOf(store, await findStoredSweep(store, name));
+      await print(context, {
+        table: () => detailText(entry),
+        json: () => ({
+          ...rowOf(entry),
+          questions: entry.record.questions as unknown as Json,
+          failures: entry.progress.failures as unknown as Json,
+        }),
+        csv: () => ({ columns: COLUMNS, rows: [rowOf(entry)] }),
+      });
+      return EXIT.done;
+    }),
+  );
+}

@@ -1,0 +1,84 @@
+/** `windrow sweep FILE`: computes every cell of a sweep file that the store does not hold yet. */
+import type { Command } from 'commander';
+import type { Json } from '../../core/json.js';
+import { runSweep } from '../../coordinator/run-sweep.js';
+import { formatBytes, formatCount, formatNumber, formatSeconds } from '../../report/format.js';
+import { renderPairs } from '../../report/table.js';
+import { estimateSweep } from '../../sweep/estimate.js';
+import { expandGrid } from '../../sweep/grid.js';
+import { readSweepFile } from '../../sweep/read-file.js';
+import type { Grid } from '../../sweep/types.js';
+import { memoryLimit, openStore, threadCount } from '../compose.js';
+import { type Context, EXIT, type Io } from '../context.js';
+import { computeOptions, storeOption, verb } from '../options.js';
+import { print } from '../print.js';
+import { runVerb } from '../run-verb.js';
+import { finish, runWith } from '../run-and-report.js';
+
+interface Options {
+  readonly estimate?: boolean;
+  readonly report?: string;
+  readonly allowLarge?: boolean;
+}
+
+async function printEstimate(context: Context, grid: Grid): Promise<void> {
+  const threads = threadCount(context.settings);
+  const estimate = estimateSweep(grid, { threads });
+  const limit = memoryLimit(context.settings);
+  const flat = {
+    sweep: grid.name,
+    points: estimate.points,
+    questions: estimate.questions,
+    cells: estimate.cells,
+    largest_dimension: estimate.largestDimension,
+    memory_per_worker: estimate.memory,
+    memory_limit: limit,
+    kernel_flops: estimate.flops.kernel,
+    statistics_flops: estimate.flops.statistics,
+    threads,
+    seconds: estimate.seconds,
+    sampled_points: estimate.sampled,
+  };
+  const axes = grid.axes.map(({ name, values, unit }) => [`axis ${name}`, `${formatCount(values.length)} values (${unit})`] as const);
+  await print(context, {
+    table: () =>
+      renderPairs([
+        ['sweep', grid.name],
+        ...axes,
+        ['points', formatCount(estimate.points)],
+        ['questions', formatCount(estimate.questions)],
+        ['cells', formatCount(estimate.cells)],
+        ['largest matrix', `${formatCount(estimate.largestDimension)} × ${formatCount(estimate.largestDimension)}`],
+        ['memory per worker', `${formatBytes(estimate.memory)} of ${formatBytes(limit)} allowed`],
+        [
+          'work',
+          `${formatNumber(estimate.flops.total, 3)} flop (spectral measures ${formatNumber(estimate.flops.kernel, 3)}, statistics ${formatNumber(estimate.flops.statistics, 3)})`,
+        ],
+        ['time', `about ${formatSeconds(estimate.seconds)} on ${threads} thread(s), an upper estimate with nothing stored`],
+        ...(estimate.sampled < estimate.points ? [['estimated from', `${formatCount(estimate.sampled)} points`] as const] : []),
+      ]),
+    json: () => flat,
+    csv: () => ({ columns: Object.keys(flat), rows: [flat] }),
+  });
+}
+
+export function sweepCommand(program: Command, io: Io): void {
+  const command = verb(program, 'sweep', 'compute a sweep file; cells that are in the store already are reused')
+    .argument('<file>', 'sweep file, YAML or JSON')
+    .option('--estimate', 'print grid, memory and time without running')
+    .option('--report <folder>', 'afterwards show phase diagram and boundary, and write figures there')
+    .option('--allow-large', 'accept a grid above two million cells');
+  storeOption(computeOptions(command)).action(
+    runVerb<[string], Options>(io, { drains: true }, async (context, options, file) => {
+      const document = readSweepFile(file, { allowLarge: options.allowLarge === true });
+      const grid = expandGrid(document);
+      if (options.estimate === true) {
+        await printEstimate(context, grid);
+        return EXIT.done;
+      }
+      const store = await openStore(context);
+      const summary = await runWith(context, store, options, (run) => runSweep({ ...run, grid, document: document as unknown as Json }));
+      return finish(context, store, summary, options);
+    }),
+  );
+}

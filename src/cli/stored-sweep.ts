@@ -1,0 +1,80 @@
+/** A sweep in the store as commands read it: its grid, its words, and samples of its rows. */
+import { WindrowError } from '../core/errors.js';
+import type { Quantity } from '../analysis/quantities.js';
+import { collectSamples, type Coordinates, type Sample } from '../analysis/samples.js';
+import { samplesAt } from '../analysis/cut.js';
+import { findModel } from '../models/registry.js';
+import { stateText } from '../report/format.js';
+import { type SweepLabels, sweepLabels } from '../report/labels.js';
+import type { ResultStore, SweepRecord } from '../store/types.js';
+import { expandGrid } from '../sweep/grid.js';
+import { documentFromJson } from '../sweep/read.js';
+import type { Grid } from '../sweep/types.js';
+
+export interface StoredSweep {
+  readonly record: SweepRecord;
+  readonly grid: Grid;
+  readonly labels: SweepLabels;
+  /** Sentences for captions: the states and the parameters that are the same everywhere. */
+  readonly notes: readonly string[];
+}
+
+/** @throws WindrowError `sweep.unknown`, with the names that exist */
+export async function findStoredSweep(store: ResultStore, name: string): Promise<SweepRecord> {
+  const record = await store.findSweep(name);
+  if (record) return record;
+  const known = (await store.listSweeps()).map((sweep) => sweep.name);
+  throw new WindrowError('sweep.unknown', 'no sweep of this name in the store', {
+    found: name,
+    allowed: known.length === 0 ? 'none yet: run `windrow sweep FILE` first' : known.join(', '),
+  });
+}
+
+function notesOf(grid: Grid): string[] {
+  const { spec } = grid.pointAt(0);
+  const axes = new Set(grid.axes.map(({ name }) => name));
+  const fixed = Object.entries(spec.parameters).filter(([name, value]) => !axes.has(name) && value !== null);
+  const states = ['prepare', 'detect'].some((axis) => axes.has(axis))
+    ? []
+    : spec.detected === 'same'
+      ? [`Prepared and detected state: ${stateText(spec.prepared)}.`]
+      : [`Prepared: ${stateText(spec.prepared)}; detected: ${stateText(spec.detected)}.`];
+  const parameters = fixed.map(([name, value]) => `${name} = ${typeof value === 'object' ? JSON.stringify(value) : String(value)}`);
+  return [...states, ...(parameters.length === 0 ? [] : [`${parameters.join(', ')}.`])];
+}
+
+/** @throws WindrowError `sweep.unknown` */
+export async function readStoredSweep(store: ResultStore, name: string): Promise<StoredSweep> {
+  const record = await findStoredSweep(store, name);
+  const grid = expandGrid(documentFromJson(record.document));
+  return { record, grid, labels: sweepLabels(grid, findModel(grid.model)), notes: notesOf(grid) };
+}
+
+export interface Selection {
+  /** Numbers of questions; all when absent. */
+  readonly questions?: readonly number[] | undefined;
+  readonly at?: Coordinates;
+}
+
+/**
+ * Samples of one quantity, streamed from the store.
+ * @throws WindrowError `cli.usage` for a question the sweep has not, `analysis.axis` for a place that is not on the grid
+ */
+export async function readSamples(
+  store: ResultStore,
+  sweep: StoredSweep,
+  quantity: Quantity,
+  { questions, at = {} }: Selection,
+): Promise<Sample[]> {
+  const last = sweep.grid.questions.length - 1;
+  const foreign = questions?.find((ordinal) => ordinal > last);
+  if (foreign !== undefined) {
+    throw new WindrowError('cli.usage', 'no such question in the sweep', {
+      where: '--question',
+      found: String(foreign),
+      allowed: `0 to ${last}, as \`windrow status ${sweep.grid.name}\` lists them`,
+    });
+  }
+  const rows = store.cells({ sweep: sweep.grid.name, ...(questions === undefined ? {} : { questions }) });
+  return samplesAt(await collectSamples(rows, quantity), at);
+}
