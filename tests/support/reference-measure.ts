@@ -29,11 +29,11 @@ export function measureOf(levels: readonly { energy: number; weight: number; ove
 export const twoLevel = (g: number, transition = false): SpectralMeasure =>
   measureOf([-1, 1].map((sign) => ({ energy: sign * g, weight: 0.5, ...(transition ? { overlap: -sign / 2 } : {}) })));
 
-/** Ring of `sites` sites, H = −g Σ(|x><x+1| + h.c.) with `phase` per bond, prepared `distance` sites before the detected site. */
+/** Ring of `sites` sites, H = −g Σ(e^{i·phase}|x+1><x| + h.c.), prepared `distance` sites before the detected site. */
 export function ring(sites: number, distance = 0, g = 1, phase = 0): SpectralMeasure {
   const levels: { energy: number; weight: number; overlap: [number, number] }[] = [];
   for (let k = 0; k < sites; k++) {
-    const energy = -2 * g * Math.cos((2 * Math.PI * k) / sites + phase);
+    const energy = -2 * g * Math.cos((2 * Math.PI * k) / sites - phase);
     const angle = (2 * Math.PI * k * distance) / sites;
     const same = levels.find((level) => Math.abs(level.energy - energy) < 1e-9 * g);
     if (same === undefined) levels.push({ energy, weight: 1 / sites, overlap: [Math.cos(angle) / sites, Math.sin(angle) / sites] });
