@@ -42,8 +42,7 @@ export function createBundler({ sweep, methodVersion, questions, jobPoints = JOB
 
   const flush = (): readonly Job[] => {
     if (points.length === 0) return [];
-    const content = points.map((point) => [point.id, point.open.map((index) => questions[index].id)]);
-    const job: Job = { id: digest([sweep, methodVersion, content]), sweep, methodVersion, questions, points, memory, cost };
+    const job = makeJob({ sweep, methodVersion, questions, points, memory, cost });
     points = [];
     memory = 0;
     cost = 0;
@@ -62,4 +61,16 @@ export function createBundler({ sweep, methodVersion, questions, jobPoints = JOB
     },
     flush,
   };
+}
+
+/** A job with its id, the digest of what is to be computed. */
+function makeJob(content: Omit<Job, 'id'>): Job {
+  const { sweep, methodVersion, questions, points } = content;
+  return { id: digest([sweep, methodVersion, points.map(({ id, open }) => [id, open.map((index) => questions[index].id)])]), ...content };
+}
+
+/** The points of a job as jobs of their own. */
+export function splitJob(job: Job): readonly Job[] {
+  const { sweep, methodVersion, questions, points, memory } = job;
+  return points.map((point) => makeJob({ sweep, methodVersion, questions, points: [point], memory, cost: job.cost / points.length }));
 }

@@ -13,7 +13,7 @@ import { Queue } from 'bullmq';
 import { WindrowError } from '../../core/errors.js';
 import { METHOD_VERSION } from '../../sweep/identity.js';
 import { checkVersion } from '../job-form.js';
-import { laneOf, LANES, type Lane } from '../lanes.js';
+import { laneOf, LANES, type Lane, type Lanes } from '../lanes.js';
 import type { Job, JobQueue, WorkerRegistry } from '../types.js';
 import { consumeLanes, type ConsumerTiming } from './consume-lanes.js';
 import { asked, checkServer, connect, connectFirst, describeServer, type RedisServer } from './redis-connection.js';
@@ -22,8 +22,10 @@ import { redisWorkerRegistry } from './worker-registry.js';
 export interface BullMqOptions extends RedisServer {
   /** begins every key of this cluster in Redis; default 'windrow' */
   readonly prefix?: string;
-  /** lanes that `consume` takes jobs from; all when absent */
-  readonly lanes?: readonly Lane[];
+  /** all lanes of the cluster, the same for every process; LANES when absent */
+  readonly lanes?: Lanes;
+  /** those that `consume` takes jobs from; all when absent */
+  readonly consumed?: readonly Lane[];
   /** jobs of this version are taken and added; this program's when absent */
   readonly methodVersion?: string;
   readonly timing?: Partial<ConsumerTiming>;
@@ -45,7 +47,7 @@ const CHUNK = 250;
 
 /** Connects and checks the server. @throws settings.invalid and the errors named above */
 export async function openBullMqQueue(options: BullMqOptions): Promise<BullMqQueue> {
-  const { prefix = 'windrow', methodVersion = METHOD_VERSION, onWarning = () => undefined } = options;
+  const { prefix = 'windrow', lanes = LANES, methodVersion = METHOD_VERSION, onWarning = () => undefined } = options;
   if (!PREFIX.test(prefix)) {
     throw new WindrowError('settings.invalid', 'the prefix of keys cannot be used', {
       where: 'redis-prefix',
@@ -62,7 +64,7 @@ export async function openBullMqQueue(options: BullMqOptions): Promise<BullMqQue
     client.disconnect();
     throw error;
   }
-  const queues = new Map(LANES.map((lane) => [lane.name, openLane(lane)]));
+  const queues = new Map(lanes.map((lane) => [lane.name, openLane(lane)]));
   let open = true;
 
   function openLane(lane: Lane): Queue<Job> {
@@ -88,7 +90,7 @@ export async function openBullMqQueue(options: BullMqOptions): Promise<BullMqQue
     async add(jobs) {
       for (const job of jobs) checkVersion(job, methodVersion);
       for (const [lane, queue] of queues) {
-        const own = jobs.filter((job) => laneOf(job.memory).name === lane);
+        const own = jobs.filter((job) => laneOf(job.memory, lanes).name === lane);
         for (let from = 0; from < own.length; from += CHUNK) {
           const entries = own.slice(from, from + CHUNK).map((job) => ({ name: job.sweep, data: job, opts: { jobId: jobKey(job.id) } }));
           await ask(() => queue.addBulk(entries));
@@ -111,7 +113,7 @@ export async function openBullMqQueue(options: BullMqOptions): Promise<BullMqQue
           concurrency,
           methodVersion,
           onWarning,
-          names: (options.lanes ?? LANES).map((lane) => queueName(lane, methodVersion)),
+          names: (options.consumed ?? lanes).map((lane) => queueName(lane, methodVersion)),
           ...(options.timing === undefined ? {} : { timing: options.timing }),
         }),
       ),

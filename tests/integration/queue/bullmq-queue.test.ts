@@ -113,7 +113,7 @@ describe.skipIf(redis === null)('BullMQ queue', () => {
 
   it('keeps lanes apart: a worker of the small lane never sees a large job', async () => {
     const queue = await open();
-    const [small, both] = [await open({ lanes: [LANES[0]] }), await open()];
+    const [small, both] = [await open({ consumed: [LANES[0]] }), await open()];
     await queue.add([sampleJob(1), large(2), sampleJob(3), { ...large(4), memory: 1e15 }]);
     const seen: string[] = [];
     const first = await small.consume(async (job) => void seen.push(job.id), { concurrency: 4 });
