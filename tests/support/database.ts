@@ -31,6 +31,8 @@ export async function createDatabase({ empty = false }: DatabaseOptions = {}): P
   const url = new URL(offer.url);
   url.pathname = `/${name}`;
   const stores: ResultStore[] = [];
+  const beside = new pg.Pool({ connectionString: url.href, max: 1 });
+  beside.on('error', () => undefined);
   return {
     url: url.href,
     async open() {
@@ -38,9 +40,10 @@ export async function createDatabase({ empty = false }: DatabaseOptions = {}): P
       stores.push(store);
       return store;
     },
-    query: (text, parameters = []) => statement(url.href, text, parameters),
+    query: async <Row extends pg.QueryResultRow>(text: string, parameters: unknown[] = []) =>
+      (await beside.query<Row>(text, parameters)).rows,
     async drop() {
-      await Promise.all(stores.map((store) => store.close()));
+      await Promise.all([beside.end(), ...stores.map((store) => store.close())]);
       const left = await connectionsTo(offer.url, name);
       await statement(offer.url, `drop database ${name} with (force)`);
       if (left.length > 0) throw new Error(`connections left to the test database: ${left.join('; ')}`);
