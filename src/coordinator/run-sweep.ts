@@ -15,11 +15,11 @@
  */
 import { digest } from '../core/json.js';
 import { isRetryable, pause, withRetry } from '../core/retry.js';
-import type { ComputePool, Job } from '../queue/types.js';
+import type { ComputePool, Delivery, Job } from '../queue/types.js';
 import type { SweepProgress } from '../store/types.js';
 import { METHOD_VERSION } from '../sweep/identity.js';
 import { feedUntilComplete } from './feed-until-complete.js';
-import { runJob } from './run-job.js';
+import { runDelivery } from './run-delivery.js';
 import { trackProgress } from './track-progress.js';
 import type { SweepRun, SweepStatus, SweepSummary } from './types.js';
 
@@ -68,9 +68,9 @@ export async function runSweep(run: SweepRun): Promise<SweepSummary> {
     onError: (error) => halt(asError(error)),
   });
 
-  const compute = async (job: Job, threads: ComputePool): Promise<void> => {
+  const compute = async (job: Job, delivery: Delivery, threads: ComputePool): Promise<void> => {
     try {
-      const { seconds } = await runJob(job, store, threads, { memory: run.memory });
+      const { seconds } = await runDelivery(job, delivery, { store, queue, pool: threads }, { memory: run.memory });
       shares.kernel += seconds.kernel;
       shares.statistics += seconds.statistics;
       shares.store += seconds.store;
@@ -84,7 +84,8 @@ export async function runSweep(run: SweepRun): Promise<SweepSummary> {
   const feedToEnd = async (): Promise<true> => {
     phase = 'feeding';
     // Twice the threads, so that one job is stored while the next one is computed.
-    const consumer = pool === null ? null : await queue.consume((job) => compute(job, pool), { concurrency: 2 * pool.threads });
+    const consumer =
+      pool === null ? null : await queue.consume((job, delivery) => compute(job, delivery, pool), { concurrency: 2 * pool.threads });
     try {
       await feedUntilComplete({
         grid,

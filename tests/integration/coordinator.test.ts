@@ -290,8 +290,8 @@ describe('running a sweep', () => {
         const queue = openQueue();
         const doubling = overriding(queue, {
           consume: (handler, options) =>
-            queue.consume(async (job) => {
-              await Promise.all([handler(job), handler(job)]);
+            queue.consume(async (job, delivery) => {
+              await Promise.all([handler(job, delivery), handler(job, delivery)]);
             }, options),
         });
         const twice = await other.open();
@@ -300,6 +300,31 @@ describe('running a sweep', () => {
       } finally {
         await other.drop();
       }
+    });
+
+    it('takes a job apart that has lost its worker, and sets a point aside that has lost two', async () => {
+      const queue = openQueue();
+      const sweep = doubleWell('deadly');
+      const guilty = sweep.grid.pointAt(33).id;
+      const losses = new Map<string, number>();
+      // The first two workers that meet the guilty point are lost with their job; the queue delivers it again.
+      const deadly = overriding(queue, {
+        consume: (handler, options) =>
+          queue.consume(async (job) => {
+            const lost = losses.get(job.id) ?? 0;
+            if (lost < 2 && job.points.some(({ id }) => id === guilty)) {
+              losses.set(job.id, lost + 1);
+              throw away();
+            }
+            await handler(job, { losses: lost });
+          }, options),
+      });
+      const summary = await runSweep(runOf(sweep, { queue: deadly }));
+      expect(summary).toMatchObject({ outcome: 'done', failed: 1, computed: 158 });
+      expect(summary.failures[0]).toMatchObject({ code: 'point.too-large' });
+      expect(summary.failures[0].message).toContain('2 workers were lost');
+      const failed = (await rowsOf(store, 'deadly')).filter(({ fields }) => fields === null);
+      expect(failed.map(({ pointId }) => pointId)).toEqual([guilty, guilty]);
     });
 
     it('refuses a name that is taken by another sweep, and a sweep that is not there', async () => {
