@@ -5,6 +5,9 @@ import { INTERVALS_LIMIT } from './schema.js';
 /** Bytes of a file of intervals. */
 export const INTERVALS_FILE_LIMIT = 16 * 1024 * 1024;
 
+/** Number() would also take 0x10. */
+const DECIMAL = /^[\d.eE+-]+$/;
+
 /**
  * The intervals of a file, in its order.
  * @throws WindrowError sweep.value with the line of the first entry that is not a finite number ≥ 0
@@ -17,7 +20,7 @@ export function parseIntervals(text: string, file: string): readonly number[] {
     for (const word of content.replace(/#.*$/, '').split(/[\s,;]+/)) {
       if (word === '') continue;
       const value = Number(word);
-      if (!Number.isFinite(value) || value < 0 || !/^[+\d.]/.test(word)) {
+      if (!Number.isFinite(value) || value < 0 || !DECIMAL.test(word)) {
         throw refuse(index + 1, 'an entry that is not an interval', word.slice(0, 40), 'a finite number of at least 0');
       }
       intervals.push(value);

@@ -13,8 +13,9 @@ import type { KeyPath } from './refusal.js';
 export const FILE_LIMIT = 4 * 1024 * 1024;
 /** Nested collections: far more than a sweep needs, far fewer than a stack holds. */
 const DEPTH_LIMIT = 64;
-/** Nodes that aliases may expand to. */
+/** Uses of one anchor, and values a file may hold once its aliases are expanded: what 4 MiB could hold written out. */
 const ALIAS_LIMIT = 100;
+const VALUE_LIMIT = 2_000_000;
 
 export interface Source {
   readonly value: unknown;
@@ -148,8 +149,7 @@ function checkJson(text: string, file: string): void {
 function valueOf(document: ReturnType<typeof parseDocument>, file: string): unknown {
   try {
     const value: unknown = document.toJS({ maxAliasCount: ALIAS_LIMIT });
-    // A list that contains itself passes the alias count; JSON finds it.
-    JSON.stringify(value);
+    if (expandedSize(value, new Map()) > VALUE_LIMIT) throw new RangeError(`more than ${VALUE_LIMIT} values when expanded`);
     return value;
   } catch (cause) {
     throw syntax(
@@ -161,6 +161,18 @@ function valueOf(document: ReturnType<typeof parseDocument>, file: string): unkn
       cause,
     );
   }
+}
+
+/** Values below an object, shared ones counted as often as they are used; a list that contains itself never ends. */
+function expandedSize(value: unknown, known: Map<object, number>): number {
+  if (typeof value !== 'object' || value === null) return 1;
+  const counted = known.get(value);
+  if (counted !== undefined) return counted;
+  known.set(value, Infinity);
+  let size = 1;
+  for (const inner of Object.values(value)) size += expandedSize(inner, known);
+  known.set(value, size);
+  return size;
 }
 
 function lineOf(root: unknown, path: KeyPath, lines: LineCounter): number {

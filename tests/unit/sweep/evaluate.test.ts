@@ -1,6 +1,5 @@
 /** Evaluation and estimates, against closed forms of the two-level system and the ring. */
 import { describe, expect, it } from 'vitest';
-import type { Json } from '../../../src/core/json.js';
 import { estimateSweep } from '../../../src/sweep/estimate.js';
 import { evaluatePoint } from '../../../src/sweep/evaluate.js';
 import { expandGrid } from '../../../src/sweep/grid.js';
@@ -9,7 +8,7 @@ import { documentFromJson } from '../../../src/sweep/read.js';
 import type { Grid, PointTask } from '../../../src/sweep/types.js';
 import { smallSweep, type Mapping } from '../../support/small-sweep.js';
 
-const gridOf = (changes: Mapping): Grid => expandGrid(documentFromJson(smallSweep(changes) as Json));
+const gridOf = (changes: Mapping): Grid => expandGrid(documentFromJson(smallSweep(changes)));
 const options = { memory: 1e9 };
 
 function taskOf(grid: Grid, ordinal = 0): PointTask {

@@ -165,6 +165,6 @@ function reversedKeys(value: Json): Json {
   return Object.fromEntries(
     Object.entries(value)
       .reverse()
-      .map(([key, inner]) => [key, reversedKeys(inner as Json)]),
+      .map(([key, inner]) => [key, reversedKeys(inner)]),
   );
 }
