@@ -72,53 +72,58 @@ function averagedTransition(measure: SpectralMeasure, pairs: PairTable): Transit
   const { overlapRe: qRe, overlapIm } = measure;
   const qIm = overlapIm ?? new Float64Array(n);
   const fixedPart = staticWeight(measure);
-  let active = pairs.re.length;
-  const re = new Float64Array(active);
-  const im = new Float64Array(active);
-  const xRe = new Float64Array(active);
-  const xIm = new Float64Array(active);
+  // One array, records of Re and Im of 2 q_i q_j* χ^k (a pair and its conjugate) and of χ; averaged.ts tells why.
+  const memory = new Float64Array(4 * pairs.re.length);
+  let end = memory.length;
   let total = fixedPart;
-  for (let i = 0, p = 0; i < n; i++) {
-    for (let j = i + 1; j < n; j++, p++) {
-      // 2 q_i q_j*: the pair and its conjugate.
-      re[p] = 2 * (qRe[i] * qRe[j] + qIm[i] * qIm[j]);
-      im[p] = 2 * (qIm[i] * qRe[j] - qRe[i] * qIm[j]);
-      xRe[p] = 1 - pairs.re[p];
-      xIm[p] = -pairs.im[p];
-      total += Math.hypot(re[p], im[p]);
+  for (let i = 0, p = 0, at = 0; i < n; i++) {
+    for (let j = i + 1; j < n; j++, p++, at += 4) {
+      memory[at] = 2 * (qRe[i] * qRe[j] + qIm[i] * qIm[j]);
+      memory[at + 1] = 2 * (qIm[i] * qRe[j] - qRe[i] * qIm[j]);
+      memory[at + 2] = 1 - pairs.re[p];
+      memory[at + 3] = -pairs.im[p];
+      total += Math.hypot(memory[at], memory[at + 1]);
     }
   }
+  const floor = (NEGLIGIBLE * total) / Math.max(1, pairs.re.length);
   let steps = 0;
-  const letGo = (): void => {
-    const floor = (NEGLIGIBLE * total) / Math.max(1, re.length);
-    let kept = 0;
-    for (let p = 0; p < active; p++) {
-      if (Math.abs(re[p]) + Math.abs(im[p]) <= floor) continue;
-      re[kept] = re[p];
-      im[kept] = im[p];
-      xRe[kept] = xRe[p];
-      xIm[kept] = xIm[p];
-      kept++;
-    }
-    active = kept;
-  };
-  letGo();
+  end = letGo(memory, end, floor);
   return {
     next() {
-      if (++steps % SWEEP_EVERY === 0) letGo();
-      let moving = 0;
-      for (let p = 0; p < active; p++) {
-        const a = re[p] * xRe[p] - im[p] * xIm[p];
-        im[p] = re[p] * xIm[p] + im[p] * xRe[p];
-        re[p] = a;
-        moving += a;
-      }
-      return fixedPart + moving;
+      if (++steps % SWEEP_EVERY === 0) end = letGo(memory, end, floor);
+      return fixedPart + advance(memory, end);
     },
     reach() {
-      let sum = 0;
-      for (let p = 0; p < active; p++) sum += Math.hypot(re[p], im[p]);
-      return sum + NEGLIGIBLE * total;
+      let sum = NEGLIGIBLE * total;
+      for (let at = 0; at < end; at += 4) sum += Math.hypot(memory[at], memory[at + 1]);
+      return sum;
     },
   };
+}
+
+/** Drops the records that have become negligible; returns where the rest ends. */
+function letGo(memory: Float64Array, end: number, floor: number): number {
+  let to = 0;
+  for (let from = 0; from < end; from += 4) {
+    if (Math.abs(memory[from]) + Math.abs(memory[from + 1]) <= floor) continue;
+    if (to !== from) for (let k = 0; k < 4; k++) memory[to + k] = memory[from + k];
+    to += 4;
+  }
+  return to;
+}
+
+/** Multiplies every record by its χ; returns the sum of the real parts. */
+function advance(m: Float64Array, end: number): number {
+  let sum = 0;
+  for (let at = 0; at < end; at += 4) {
+    const a = m[at];
+    const b = m[at + 1];
+    const xRe = m[at + 2];
+    const xIm = m[at + 3];
+    const re = a * xRe - b * xIm;
+    m[at] = re;
+    m[at + 1] = a * xIm + b * xRe;
+    sum += re;
+  }
+  return sum;
 }
