@@ -5,8 +5,8 @@
  * are doubtful, failed, missing or without a value are left out and counted; where they lie between two usable neighbours the bracket
  * spans them. 'No crossing' and 'too few points' are answers, with words, not errors.
  *
- * The level rule is exact for any curve that is monotone between grid points: the crossing lies inside the bracket. The steepest rule
- * takes the pair of neighbours with the greatest slope and places the estimate at the vertex of the parabola through the slopes of that
+ * The rules `level` and `share` are exact for any curve that is monotone between grid points: the crossing lies inside the bracket.
+ * The steepest rule is for smooth quantities (a whole number changes by steps, whose slopes are those of the grid): it takes the pair of neighbours with the greatest slope and places the estimate at the vertex of the parabola through the slopes of that
  * pair and its two neighbours. Units: those of the axis for `low`, `high`, `estimate`.
  */
 import type { Question } from '../statistics/types.js';
@@ -14,7 +14,9 @@ import type { Coordinates } from './samples.js';
 import type { Curve, CurvePoint } from './curves.js';
 import { spacingOf } from './spacing.js';
 
-export type BoundaryRule = { readonly kind: 'level'; readonly level: number } | { readonly kind: 'steepest' };
+/** `level`: crosses a value; `share`: crosses this share of the greatest value of its curve, which makes sizes comparable; `steepest`. */
+export type BoundaryRule =
+  { readonly kind: 'level'; readonly level: number } | { readonly kind: 'share'; readonly share: number } | { readonly kind: 'steepest' };
 
 export interface Boundary {
   readonly questionOrdinal: number;
@@ -115,6 +117,17 @@ function steepest(points: readonly Usable[], logarithmic: boolean): Finding {
   );
 }
 
+function find(points: readonly Usable[], rule: BoundaryRule): Finding {
+  switch (rule.kind) {
+    case 'level':
+      return crossing(points, rule.level);
+    case 'share':
+      return crossing(points, rule.share * Math.max(...points.map(({ y }) => y)));
+    case 'steepest':
+      return steepest(points, spacingOf(points.map(({ x }) => x)) === 'log');
+  }
+}
+
 /** One boundary for each curve along the coupling (or any other numeric axis). */
 export function boundaryOf(curve: Curve, rule: BoundaryRule): Boundary {
   const usable = curve.points.filter((point): point is CurvePoint & { x: number; value: number } => {
@@ -122,7 +135,7 @@ export function boundaryOf(curve: Curve, rule: BoundaryRule): Boundary {
   });
   const points = usable.map(({ x, value }) => ({ x, y: value }));
   const count = (state: CurvePoint['state']): number => curve.points.filter((point) => point.state === state).length;
-  const finding = rule.kind === 'level' ? crossing(points, rule.level) : steepest(points, spacingOf(points.map(({ x }) => x)) === 'log');
+  const finding = find(points, rule);
   return {
     questionOrdinal: curve.questionOrdinal,
     question: curve.question,

@@ -1,7 +1,7 @@
 /** How commands say which boundary is meant, and boundaries as tables, rows and documents. */
-import { Command, Option } from 'commander';
+import type { Command } from 'commander';
 import { type Boundary, boundaryOf, type BoundaryRule } from '../analysis/boundary.js';
-import { curvesOf } from '../analysis/curves.js';
+import { curvesOf, groupBy } from '../analysis/curves.js';
 import { findQuantity, ORDER_PARAMETERS, type Quantity } from '../analysis/quantities.js';
 import type { Sample } from '../analysis/samples.js';
 import type { Json } from '../core/json.js';
@@ -9,9 +9,13 @@ import { coordinatesText, formatNumber, scheduleText } from '../report/format.js
 import { renderTable } from '../report/table.js';
 import { parseNumber } from './options.js';
 
+/** Half of the greatest value: defined for every budget and size, and steady against the steps of whole numbers. */
+const STANDARD_SHARE = '50%';
+
 export interface BoundaryOptions {
   readonly boundary?: string;
   readonly level?: string;
+  readonly steepest?: boolean;
 }
 
 export interface BoundaryChoice {
@@ -25,16 +29,21 @@ export function boundaryOptions(command: Command): Command {
   const names = ORDER_PARAMETERS.map(({ name }) => name).join(', ');
   return command
     .option('--boundary <field>', `order parameter of the boundary: ${names} or any numeric field`, ORDER_PARAMETERS[0].name)
-    .addOption(
-      new Option('--level <value>', 'boundary where the order parameter crosses this value; without it, where it changes most steeply'),
-    );
+    .option('--level <value>', 'boundary where the order parameter crosses this value, or a share of its greatest one', STANDARD_SHARE)
+    .option('--steepest', 'boundary where it changes most steeply instead');
 }
 
 /** @throws WindrowError `analysis.field`, `cli.usage` */
-export function boundaryChoice({ boundary, level }: BoundaryOptions): BoundaryChoice {
+export function boundaryChoice({ boundary, level = STANDARD_SHARE, steepest }: BoundaryOptions): BoundaryChoice {
   const quantity = boundary === undefined ? ORDER_PARAMETERS[0] : findQuantity(boundary);
   const name = quantity.name.replaceAll('_', ' ');
-  if (level === undefined) return { quantity, rule: { kind: 'steepest' }, words: `steepest change of the ${name}` };
+  if (steepest === true) return { quantity, rule: { kind: 'steepest' }, words: `steepest change of the ${name}` };
+  if (level.endsWith('%')) {
+    const allowed = 'a number, or a share above 0 % and below 100 %';
+    const share = parseNumber('--level', level.slice(0, -1), allowed, (value) => value > 0 && value < 100) / 100;
+    const words = share === 0.5 ? 'half' : `${formatNumber(100 * share)} %`;
+    return { quantity, rule: { kind: 'share', share }, words: `${name} at ${words} of its greatest value` };
+  }
   const value = parseNumber('--level', level);
   return { quantity, rule: { kind: 'level', level: value }, words: `${name} crosses ${formatNumber(value)}` };
 }
@@ -48,7 +57,27 @@ function leftOut({ left_out }: Boundary): string {
   return parts.length === 0 ? '–' : parts.map(([reason, count]) => `${count} ${reason}`).join(', ');
 }
 
-/** One row for each size, with the columns `low`, `estimate`, `high` of every question beside each other where they are few. */
+function bracketText({ bracket, outcome }: Boundary): string {
+  return bracket ? `[${formatNumber(bracket.low, 4)}, ${formatNumber(bracket.high, 4)}] ≈ ${formatNumber(bracket.estimate, 3)}` : outcome;
+}
+
+/** One row a place, one column a question: brackets side by side. */
+export function boundaryOverview(boundaries: readonly Boundary[]): string {
+  const questions = new Map(boundaries.map(({ questionOrdinal, question }) => [questionOrdinal, question]));
+  const places = [...groupBy(boundaries, ({ at }) => JSON.stringify(at)).values()];
+  return renderTable(places, [
+    { title: 'at', value: ([first]) => coordinatesText((first).at) },
+    ...[...questions].map(([ordinal, question]) => ({
+      title: scheduleText(question.schedule),
+      value: (place: readonly Boundary[]) => {
+        const found = place.find(({ questionOrdinal }) => questionOrdinal === ordinal);
+        return found ? bracketText(found) : '–';
+      },
+    })),
+  ]);
+}
+
+/** One row a boundary, with what was left out and why. */
 export function boundaryTable(boundaries: readonly Boundary[]): string {
   const several = new Set(boundaries.map(({ questionOrdinal }) => questionOrdinal)).size > 1;
   return renderTable(boundaries, [
@@ -88,7 +117,7 @@ export const BOUNDARY_COLUMNS = [
 export function boundaryRow({ bracket, left_out, ...boundary }: Boundary): { readonly [key in (typeof BOUNDARY_COLUMNS)[number]]: Json } {
   return {
     question: boundary.questionOrdinal,
-    schedule: boundary.question.schedule as Json,
+    schedule: boundary.question.schedule,
     budget: boundary.question.budget,
     at: boundary.at,
     outcome: boundary.outcome,

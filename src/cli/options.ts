@@ -1,5 +1,6 @@
 /** Options that several commands share, and the small languages of their values. */
-import { Command, Option } from 'commander';
+import type { Command} from 'commander';
+import { Option } from 'commander';
 import { parse as parseYaml } from 'yaml';
 import { WindrowError } from '../core/errors.js';
 import { FORMATS } from './context.js';

@@ -66,8 +66,11 @@ function cellText(point: CurvePoint, mark: boolean, cell: number, range: readonl
   const { colour, paint } = options;
   const line = colour === 'none' ? '|' : '│';
   if (point.state !== 'value' || point.value === null) {
-    const sign = mark && cell > 1 ? SIGNS[point.state].padEnd(cell - 1) + line : SIGNS[point.state].padEnd(cell);
     const part = point.value === null ? null : share(point.value, range);
+    // A doubtful cell has a value; where there is room, it is shown beside the sign.
+    const known = colour === 'none' && part !== null && cell > 1 && !mark ? digit(part) : '';
+    const rest = mark && cell > 1 ? SIGNS[point.state].padEnd(cell - 1) + line : SIGNS[point.state].padEnd(cell - known.length);
+    const sign = known + rest;
     return colour === 'none' ? sign : paint(sign, part, colour);
   }
   const part = share(point.value, range);
