@@ -30,7 +30,7 @@ const purity = {
 };
 
 export default defineConfig(
-  { ignores: ['dist/', 'out/', 'coverage/', '.cache/', '.windrow/'] },
+  { ignores: ['dist/', 'out/', 'coverage/', '.cache/', '.windrow/', '**/assembly/'] },
   eslint.configs.recommended,
   {
     files: CODE,
@@ -51,7 +51,7 @@ export default defineConfig(
       '@typescript-eslint/no-non-null-assertion': 'off',
       // With noUncheckedIndexedAccess off an indexed value never looks absent, though a map or a parsed record can lack it.
       '@typescript-eslint/no-unnecessary-condition': 'off',
-      '@typescript-eslint/no-confusing-void-expression': ['error', { ignoreArrowShorthand: true, ignoreVoidOperator: true }],
+      '@typescript-eslint/no-confusing-void-expression': ['error', { ignoreArrowShorthand: true, ignoreVoidReturningFunctions: true }],
       '@typescript-eslint/no-unused-vars': ['error', { argsIgnorePattern: '^_', varsIgnorePattern: '^_' }],
     },
   },

@@ -19,6 +19,7 @@ import { resumeCommand } from './commands/resume.js';
 import { statusCommand } from './commands/status.js';
 import { stopCommand } from './commands/stop.js';
 import { sweepCommand } from './commands/sweep.js';
+import { workerCommand } from './commands/worker.js';
 import { EXIT, type Io } from './context.js';
 import { errorText } from './report-error.js';
 
@@ -47,6 +48,7 @@ function buildProgram(io: Io): Command {
     resumeCommand,
     statusCommand,
     stopCommand,
+    workerCommand,
     mapCommand,
     cutCommand,
     boundaryCommand,

@@ -28,16 +28,17 @@ interface Report {
   readonly figures: readonly string[];
 }
 
-export function runWith(
+export async function runWith(
   context: Context,
   store: ResultStore,
   options: RunOptions,
   run: (settings: Omit<SweepRun, 'grid' | 'document'>) => Promise<SweepSummary>,
 ): Promise<SweepSummary> {
+  const workers = await openWorkers(context);
   const progress = progressView(context);
   return run({
     store,
-    ...openWorkers(context),
+    ...workers,
     memory: memoryLimit(context.settings),
     signal: context.signal,
     onProgress: (status) => progress.show(status),
@@ -49,7 +50,10 @@ function rate({ computed, seconds }: SweepSummary): number {
   return seconds > 0 ? computed / seconds : 0;
 }
 
-function headline({ sweep, outcome, cells, computed, reused, failed }: SweepSummary): string {
+function headline(context: Context, { sweep, outcome, cells, computed, reused, failed }: SweepSummary): string {
+  if (outcome === 'interrupted' && context.settings.redis !== null) {
+    return `Sweep ${sweep} goes on without this process; \`windrow status ${sweep}\` follows it, \`windrow stop ${sweep}\` ends it.`;
+  }
   if (outcome !== 'done') {
     const words = outcome === 'interrupted' ? 'was interrupted' : 'was stopped';
     return `Sweep ${sweep} ${words}; \`windrow resume ${sweep}\` computes what is missing.`;
@@ -71,7 +75,9 @@ function summaryText(context: Context, summary: SweepSummary): string {
     ['time', formatSeconds(seconds)],
     ['results', `in ${storeText(context.settings)}`],
   ]);
-  return failures.length === 0 ? `${headline(summary)}\n${pairs}` : `${headline(summary)}\n${pairs}\n\n${failureTable(failures)}`;
+  return failures.length === 0
+    ? `${headline(context, summary)}\n${pairs}`
+    : `${headline(context, summary)}\n${pairs}\n\n${failureTable(failures)}`;
 }
 
 export function failureTable(failures: SweepSummary['failures']): string {
@@ -104,7 +110,7 @@ async function makeReport(store: ResultStore, name: string, folder: string): Pro
     views.push(view);
     figures.push(...(await writeMapFigures(view, folder)));
   }
-  return { view: views[0] as MapView, figures };
+  return { view: views[0], figures };
 }
 
 function statusOf({ outcome, failed }: SweepSummary): ExitStatus {

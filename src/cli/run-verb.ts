@@ -7,16 +7,14 @@
  */
 import type { Command } from 'commander';
 import { createLog } from '../core/log.js';
-import { parseSetting, readSettings, type Settings } from '../core/settings.js';
+import { parseSetting, readSettings, type SettingName, type Settings } from '../core/settings.js';
 import { type Context, EXIT, type ExitStatus, type Format, type Io, say } from './context.js';
 import { errorText, exitOf } from './report-error.js';
 
-interface CommonOptions {
-  readonly format?: Format;
-  readonly store?: string;
-  readonly threads?: string;
-  readonly memory?: string;
-}
+/** Options of the command line that override a setting of the same name. */
+const OVERRIDES = ['store', 'threads', 'memory', 'lanes', 'grace'] as const satisfies readonly SettingName[];
+
+type CommonOptions = { readonly format?: Format } & { readonly [name in (typeof OVERRIDES)[number]]?: string };
 
 export type Action<Arguments extends readonly unknown[], Options> = (
   context: Context,
@@ -35,13 +33,11 @@ export interface VerbTraits {
 const CLOSE_MS = 2_000;
 
 function settingsOf(io: Io, options: CommonOptions): Settings {
-  const { store, threads, memory } = options;
-  return {
-    ...readSettings(io.environment),
-    ...(store === undefined ? {} : { store: parseSetting('store', store, '--store') }),
-    ...(threads === undefined ? {} : { threads: parseSetting('threads', threads, '--threads') }),
-    ...(memory === undefined ? {} : { memory: parseSetting('memory', memory, '--memory') }),
-  };
+  const given = OVERRIDES.flatMap((name) => {
+    const text = options[name];
+    return text === undefined ? [] : [[name, parseSetting(name, text, `--${name}`)] as const];
+  });
+  return { ...readSettings(io.environment), ...Object.fromEntries(given) };
 }
 
 async function closeAll(closers: Context['closers']): Promise<void> {

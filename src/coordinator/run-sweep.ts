@@ -107,7 +107,7 @@ export async function runSweep(run: SweepRun): Promise<SweepSummary> {
   try {
     const { signal } = halted;
     while (!signal.aborted) {
-      if ((await withRetry(() => store.withLock(`sweep ${grid.name}`, feedToEnd), { attempts: STARTS, signal })) !== null) break;
+      if ((await withRetry(() => store.withLock(sweepLock(grid.name), feedToEnd), { attempts: STARTS, signal })) !== null) break;
       phase = 'following';
       await pause(FOLLOW_MS, signal);
     }
@@ -136,6 +136,9 @@ export async function runSweep(run: SweepRun): Promise<SweepSummary> {
     shares,
   };
 }
+
+/** Name of the lock that whoever hands out a sweep's jobs holds. */
+export const sweepLock = (sweep: string): string => `sweep ${sweep}`;
 
 /** Registers the sweep (again) and opens it. */
 async function register({ grid, document, store, retryFailed }: SweepRun): Promise<void> {

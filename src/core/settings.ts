@@ -30,9 +30,12 @@ export interface ChoiceSetting extends Common {
   readonly default: string | null;
 }
 export interface TextSetting extends Common {
-  readonly kind: 'path' | 'url';
+  readonly kind: 'path' | 'url' | 'text';
   /** Schemes of a URL. */
   readonly schemes?: readonly string[];
+  /** What a text must match, and that in words. */
+  readonly pattern?: RegExp;
+  readonly allowed?: string;
   readonly default: string | null;
 }
 export type SettingDeclaration = NumberSetting | ChoiceSetting | TextSetting;
@@ -75,6 +78,65 @@ export const SETTINGS = {
     option: '--memory',
     description: 'memory one evaluation may use; by default half of the machine, shared by the threads',
   },
+  redis: {
+    kind: 'url',
+    env: 'REDIS_URL',
+    schemes: ['redis:', 'rediss:'],
+    default: null,
+    secret: true,
+    description: 'Redis that holds the jobs of a cluster; without it jobs run in the process that asks for them',
+  },
+  redis_ca: {
+    kind: 'path',
+    env: 'WINDROW_REDIS_CA',
+    default: null,
+    description: "PEM file of the authority that signed the certificate of Redis, where the system doesn't know it",
+  },
+  redis_prefix: {
+    kind: 'text',
+    env: 'WINDROW_REDIS_PREFIX',
+    pattern: /^[\w{}.-]{1,100}$/,
+    allowed: 'letters, digits, and _ - . { }, at most 100',
+    default: 'windrow',
+    description: 'begins every key in Redis, so that several clusters can share one',
+  },
+  lanes: {
+    kind: 'text',
+    env: 'WINDROW_LANES',
+    pattern: /^(small|large)(,(small|large))*$/,
+    allowed: 'small, large or small,large',
+    default: null,
+    option: '--lanes',
+    description: 'lanes of jobs a worker serves; by default all that its memory allows',
+  },
+  lane_small: {
+    kind: 'bytes',
+    env: 'WINDROW_LANE_SMALL',
+    unit: 'bytes',
+    minimum: 16 * MEBI,
+    maximum: 2 ** 46,
+    default: 512 * MEBI,
+    description: 'memory an evaluation may use in the small lane; the same for every process of a cluster',
+  },
+  lane_large: {
+    kind: 'bytes',
+    env: 'WINDROW_LANE_LARGE',
+    unit: 'bytes',
+    minimum: 16 * MEBI,
+    maximum: 2 ** 46,
+    default: 16 * 1024 * MEBI,
+    description: 'memory an evaluation may use in the large lane; the same for every process of a cluster',
+  },
+  grace: {
+    kind: 'integer',
+    env: 'WINDROW_GRACE',
+    unit: 'seconds',
+    minimum: 0,
+    maximum: 86_400,
+    default: 30,
+    option: '--grace',
+    description: 'seconds a worker that is told to end may take to finish its jobs',
+  },
   log_level: {
     kind: 'choice',
     env: 'WINDROW_LOG_LEVEL',
@@ -91,6 +153,13 @@ export interface Settings {
   readonly store: string;
   readonly threads: number | null;
   readonly memory: number | null;
+  readonly redis: string | null;
+  readonly redis_ca: string | null;
+  readonly redis_prefix: string;
+  readonly lanes: string | null;
+  readonly lane_small: number;
+  readonly lane_large: number;
+  readonly grace: number;
   readonly log_level: string | null;
 }
 
@@ -104,6 +173,8 @@ export function parseBytes(text: string): number | null {
   return Math.round(Number(match[1]) * factor);
 }
 
+const sizeText = (bytes: number): string => (bytes % (1024 * MEBI) === 0 ? `${bytes / (1024 * MEBI)}G` : `${bytes / MEBI}M`);
+
 /** What a setting allows, in words. */
 export function allowedText(setting: SettingDeclaration): string {
   switch (setting.kind) {
@@ -115,6 +186,8 @@ export function allowedText(setting: SettingDeclaration): string {
       return setting.choices.join(', ');
     case 'path':
       return 'a path';
+    case 'text':
+      return setting.allowed ?? 'a text';
     case 'url':
       return `a URL that begins with ${(setting.schemes ?? []).map((scheme) => `${scheme}//`).join(' or ')}`;
   }
@@ -131,6 +204,8 @@ function parse(setting: SettingDeclaration, text: string): string | number | nul
       return setting.choices.includes(text) ? text : null;
     case 'path':
       return text.includes('\0') ? null : text;
+    case 'text':
+      return (setting.pattern ?? /./).test(text) ? text : null;
     case 'url':
       return URL.canParse(text) && (setting.schemes ?? []).includes(new URL(text).protocol) ? text : null;
   }
@@ -175,7 +250,8 @@ export function readSettings(environment: Environment): Settings {
 /** The table as help text, one setting in two lines. */
 export function settingsHelp(): string {
   const lines = Object.values(SETTINGS as Record<SettingName, SettingDeclaration>).map((setting) => {
-    const standard = setting.default === null ? '' : ` (default ${setting.default})`;
+    const value = setting.kind === 'bytes' && setting.default !== null ? sizeText(setting.default) : setting.default;
+    const standard = value === null ? '' : ` (default ${value})`;
     const option = setting.option === undefined ? '' : `, or ${setting.option}`;
     return `  ${setting.env}${option}\n      ${setting.description}${standard}; ${allowedText(setting)}`;
   });

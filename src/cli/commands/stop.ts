@@ -1,5 +1,6 @@
 /** `windrow stop NAME`: asks the processes that run a sweep to finish what they have and to start nothing new. */
 import type { Command } from 'commander';
+import { sweepLock } from '../../coordinator/run-sweep.js';
 import { openStore } from '../compose.js';
 import { EXIT, type Io } from '../context.js';
 import { storeOption, verb } from '../options.js';
@@ -13,8 +14,10 @@ export function stopCommand(program: Command, io: Io): void {
     runVerb<[string], object>(io, {}, async (context, _options, name) => {
       const store = await openStore(context);
       const { state } = await findStoredSweep(store, name);
-      // Whoever runs a sweep holds its lock; a sweep that nobody runs must not be left in the state 'stopping'.
-      const idle = (await store.withLock(`sweep ${name}`, () => Promise.resolve(true))) === true;
+      // Whoever runs a sweep holds its lock; a sweep that nobody runs must not be left in the state 'stopping'. In a cluster an open
+      // sweep is carried on by the next worker that sees it, so there it is never idle.
+      const unattended = (await store.withLock(sweepLock(name), () => Promise.resolve(true))) === true;
+      const idle = unattended && (context.settings.redis === null || state !== 'open');
       if (!idle) await store.setSweepState(name, 'stopping');
       const row = { sweep: name, running: !idle, state: idle ? state : 'stopping' };
       await print(context, {
