@@ -76,7 +76,7 @@ export function mapDocument({ sweep, quantity, maps }: MapView): Json {
     unit: quantity.unit,
     maps: maps.map((map) => ({
       question: map.questionOrdinal,
-      schedule: map.question.schedule as Json,
+      schedule: map.question.schedule,
       budget: map.question.budget,
       resolution_energy: map.resolution?.energy ?? null,
       resolution_weight: map.resolution?.weight ?? null,
@@ -109,12 +109,12 @@ export function mapRows({ maps, quantity }: MapView): { columns: string[]; rows:
     map.cells.flatMap((row, y) =>
       row.map((cell) => ({
         question: map.questionOrdinal,
-        schedule: map.question.schedule as Json,
+        schedule: map.question.schedule,
         budget: map.question.budget,
         resolution_energy: map.resolution?.energy ?? null,
         resolution_weight: map.resolution?.weight ?? null,
         ...map.at,
-        [map.y.axis]: map.y.values[y] as number | string,
+        [map.y.axis]: map.y.values[y],
         [map.x.axis]: cell.x,
         [quantity.name]: cell.value,
         error: cell.error,

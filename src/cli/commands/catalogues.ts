@@ -1,6 +1,6 @@
 /** `windrow models`, `windrow schedules`, `windrow schema`: what a sweep file may say. */
 import type { Command } from 'commander';
-import { z } from 'zod';
+import type { z } from 'zod';
 import { WindrowError } from '../../core/errors.js';
 import type { Json } from '../../core/json.js';
 import { findModel, modelFamilies } from '../../models/registry.js';

@@ -31,7 +31,7 @@ function cutRows(curves: readonly Curve[], along: string, quantity: Quantity): {
   const rows = curves.flatMap(({ questionOrdinal, question, at, points }) =>
     points.map(({ x, value, error, count, state }) => ({
       question: questionOrdinal,
-      schedule: question.schedule as Json,
+      schedule: question.schedule,
       budget: question.budget,
       ...at,
       [along]: x,

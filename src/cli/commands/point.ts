@@ -66,7 +66,7 @@ function override(document: Document, pairs: readonly (readonly [string, unknown
     else if (key === 'coupling') changed['coupling'] = { values: [value], ...(scale === undefined ? {} : { as: scale }) };
     else {
       const path = key.split('.');
-      assign(changed, DOCUMENT_KEYS.has(path[0] as string) ? path : ['parameters', key], value);
+      assign(changed, DOCUMENT_KEYS.has(path[0]) ? path : ['parameters', key], value);
     }
   }
   return changed;
@@ -117,7 +117,7 @@ function rowsOf(grid: Grid, memory: number): CellRow[] {
 }
 
 function shown(value: unknown): string {
-  return typeof value === 'number' ? formatNumber(value, 12) : value === null || value === undefined ? '–' : String(value as string);
+  return typeof value === 'number' ? formatNumber(value, 12) : value === null || value === undefined ? '–' : String(value);
 }
 
 function pointText(rows: readonly CellRow[]): string {
