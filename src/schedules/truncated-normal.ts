@@ -98,7 +98,10 @@ export const truncatedNormal: ScheduleFamily<{ location: number; scale: number }
       lattice: null,
       sample: (stream) => Math.max(0, location + scale * normalAbove(-location / scale, stream)),
       complement(x, out) {
-        if (Math.abs(x) * range > QUADRATURE_PHASE) return direct(x, out);
+        if (Math.abs(x) * range > QUADRATURE_PHASE) {
+          direct(x, out);
+          return;
+        }
         let re = 0;
         let im = 0;
         for (let k = 0; k < times.length; k++) {

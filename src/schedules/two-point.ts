@@ -17,7 +17,7 @@ export const twoPoint: ScheduleFamily<{ first: number; second: number; weight: n
     })
     .refine(({ first, second, weight }) => weight * first + (1 - weight) * second > 0, {
       path: ['first'],
-      message: 'intervals whose mean is > 0',
+      error: 'intervals whose mean is > 0',
     }),
   build: ({ first, second, weight }) => {
     if (weight === 1 || first === second) return fixedInterval(first);

@@ -26,7 +26,7 @@ export const uniform: ScheduleFamily<{ low: number; high: number }> = {
       low: nonNegativeTime('shortest interval a, ≥ 0'),
       high: positiveTime('longest interval b, > low'),
     })
-    .refine(({ low, high }) => low < high, { path: ['high'], message: 'a number > low' }),
+    .refine(({ low, high }) => low < high, { path: ['high'], error: 'a number > low' }),
   build: ({ low, high }) => {
     const centre = low + (high - low) / 2;
     return {

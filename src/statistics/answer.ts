@@ -61,11 +61,9 @@ export function answer(measured: MeasuredPoint, question: Question): CellFields 
   }
   const probability = visibleProbability(levels);
   const moments = probability > 0 ? resolvedMoments(levels, detectionMoments(levels.measure, distribution, efficiency), notes) : null;
-  const within: BudgetStatistics = budgetStatistics(
-    monitoredDetection(levels.measure, distribution, { efficiency, budget }),
-    probability,
-    budget,
-  );
+  const detection = monitoredDetection(levels.measure, distribution, { efficiency, budget });
+  const within: BudgetStatistics = budgetStatistics(detection, probability, budget);
+  detection.close();
   const sampled = sampling === null ? null : sampledWinding(bright, distribution, budget, sampling, efficiency);
 
   return {

@@ -44,5 +44,6 @@ export function detectionSeries(
     detection[n] = steps.step();
     survival[n] = dark + steps.remaining();
   }
+  steps.close();
   return { detection, survival };
 }

@@ -68,5 +68,6 @@ export function stroboscopicDetection(measure: SpectralMeasure, interval: number
       for (let i = 0; i < state.re.length; i++) sum += state.re[i] * state.re[i] + state.im[i] * state.im[i];
       return sum;
     },
+    close: () => undefined,
   };
 }
