@@ -14,6 +14,7 @@ import { setTimeout as sleep } from 'node:timers/promises';
 import { findPackage, prepareBinaries } from '../../src/store/embedded/binaries.js';
 import { ensureDataFolder } from '../../src/store/embedded/data-folder.js';
 import { readPostmaster, SETTINGS, startPostmaster, stopPostmaster } from '../../src/store/embedded/postmaster.js';
+import { isAlive } from '../../src/store/embedded/processes.js';
 
 export interface PostgresForTests {
   /** of a user who may create databases */
@@ -101,15 +102,6 @@ async function clearAbandoned(): Promise<void> {
     const folder = join(tmpdir(), name);
     await stopPostmaster(join(folder, 'data'));
     await rm(folder, { recursive: true, force: true });
-  }
-}
-
-export function isAlive(pid: number): boolean {
-  try {
-    process.kill(pid, 0);
-    return true;
-  } catch (error) {
-    return (error as NodeJS.ErrnoException).code === 'EPERM';
   }
 }
 

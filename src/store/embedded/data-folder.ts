@@ -14,6 +14,7 @@ import { basename, join } from 'node:path';
 import { WindrowError } from '../../core/errors.js';
 import type { Binaries } from './binaries.js';
 import { fileError, programError } from './embedded-errors.js';
+import { isAlive, pause } from './processes.js';
 import { canRead, isRoot, newServerUser, spawnAs, type ServerUser } from './server-user.js';
 
 export interface DataFolder {
@@ -80,14 +81,17 @@ async function create(path: string, { folder, elsewhere, binaries, onNotice }: D
   let draft: string | null = null;
   try {
     if (!here) await mkdir(parent, { recursive: true, mode: 0o755 });
-    await removeAbandoned(parent);
-    draft = await mkdtemp(join(parent, DRAFT));
+    draft = await mkdtemp(join(parent, `${DRAFT}${process.pid}-`));
+    if (await isMadeByAnother(path, parent, draft)) {
+      await rm(draft, { recursive: true });
+      return;
+    }
     if (user !== null) await chown(draft, user.uid, user.gid);
     await runInitdb(initdb, draft, user);
     if (here) {
       await rename(draft, path);
     } else {
-      const data = join(parent, `store-${basename(draft).slice(DRAFT.length)}`);
+      const data = join(parent, `store-${basename(draft).slice(-6)}`);
       await rename(draft, data);
       draft = data;
       await symlink(data, path);
@@ -101,16 +105,29 @@ async function create(path: string, { folder, elsewhere, binaries, onNotice }: D
   }
 }
 
+/** Name of a folder that initdb is filling; the id of its process follows. */
 const DRAFT = 'initialising-';
+/** When the draft of a process that cannot be seen is nobody's any more. */
 const ABANDONED_MS = 600_000;
 
-/** Drafts of processes that were killed while initdb ran. */
-async function removeAbandoned(parent: string): Promise<void> {
-  for (const name of await readdir(parent)) {
-    if (!name.startsWith(DRAFT)) continue;
-    const draft = join(parent, name);
-    const found = await stat(draft).catch(() => null);
-    if (found !== null && Date.now() - found.mtimeMs > ABANDONED_MS) await rm(draft, { recursive: true, force: true });
+/**
+ * Of processes that come at once one makes the data and the others wait for it, since each initdb takes seconds; true when it is done.
+ * Removes drafts of processes that were killed on the way.
+ */
+async function isMadeByAnother(path: string, parent: string, own: string): Promise<boolean> {
+  for (;;) {
+    let wait = false;
+    for (const name of await readdir(parent)) {
+      const draft = join(parent, name);
+      if (!name.startsWith(DRAFT) || draft === own) continue;
+      const found = await stat(draft).catch(() => null);
+      if (found === null) continue;
+      if (isAlive(parseInt(name.slice(DRAFT.length)))) wait ||= draft < own;
+      else if (Date.now() - found.mtimeMs > ABANDONED_MS) await rm(draft, { recursive: true, force: true });
+    }
+    if (await exists(path)) return true;
+    if (!wait) return false;
+    await pause(50);
   }
 }
 

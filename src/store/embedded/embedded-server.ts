@@ -18,7 +18,8 @@ import { isConnectionLoss, toStoreError } from '../postgres/postgres-errors.js';
 import { findPackage, prepareBinaries, type Binaries } from './binaries.js';
 import { ensureDataFolder, ROLE, type DataFolder } from './data-folder.js';
 import { isFull, programError } from './embedded-errors.js';
-import { isServing, pause, PORT, readPostmaster, clearAway, startPostmaster, stopPostmaster, type Started } from './postmaster.js';
+import { clearAway, isServing, PORT, readPostmaster, startPostmaster, stopPostmaster, type Started } from './postmaster.js';
+import { isAlive, pause } from './processes.js';
 import type { ServerUser } from './server-user.js';
 
 export interface EmbeddedOptions {
@@ -41,10 +42,15 @@ interface Attachment {
 
 /** Advisory lock of presence; the two-number form shares no key with the one-number locks of the store. */
 const PRESENCE = '1463899218, 1';
-/** How long a server that cannot be started is tried again: one that was killed leaves processes that need a moment to end. */
-const START_MS = 30_000;
-/** How long a living server may take to accept connections; recovery after a crash reads back what was written since the checkpoint. */
-const READY_MS = 600_000;
+/** Application name of such a session; the id of its process follows. */
+const PRESENCE_NAME = 'windrow process ';
+/** How long the sessions of dead processes may take to end. */
+const LEAVE_MS = 5_000;
+/**
+ * How long a server may neither accept a connection nor say that it is on its way. One that was killed leaves processes that keep the
+ * data folder for a moment; one that recovers from a crash says so, and may take its time.
+ */
+const QUIET_MS = 60_000;
 const LARGE_LOG = 4 << 20;
 /** SQLSTATE while the server recovers, starts or stops. */
 const CANNOT_CONNECT_NOW = '57P03';
@@ -84,10 +90,7 @@ export class EmbeddedServer implements Server {
     const { presence, pool, data } = attachment;
     await pool.end();
     try {
-      const { rows } = await presence.query<{ alone: boolean }>(
-        `select pg_advisory_unlock_shared(${PRESENCE}), pg_try_advisory_lock(${PRESENCE}) as alone`,
-      );
-      if (rows[0]!.alone) await stopPostmaster(data.path);
+      if (await isLast(presence)) await stopPostmaster(data.path);
     } catch (error) {
       // The server is gone already: nothing is left to stop.
       if (!isConnectionLoss(error)) throw toStoreError(error, this.where);
@@ -97,15 +100,20 @@ export class EmbeddedServer implements Server {
   }
 
   async #attach(): Promise<Attachment> {
-    const begun = Date.now();
+    // Since the last sign that the server comes or goes.
+    let quiet: number | null = null;
+    let before: string | null = null;
     for (;;) {
       const data = await this.#dataFolder();
+      quiet ??= Date.now();
       const logged = await sizeOf(this.#log);
-      const sockets = await this.#serving(data, begun);
+      const sockets = await this.#serving(data, quiet);
       const presence = sockets === null ? 'away' : await this.#present(sockets);
       if (sockets !== null && presence instanceof pg.Client)
         return this.#watch({ presence, data, logged, pool: this.#createPool(sockets) });
-      if (Date.now() - begun > (presence === 'starting' ? READY_MS : START_MS))
+      if (presence === 'starting' || (sockets !== null && sockets !== before)) quiet = Date.now();
+      before = sockets ?? before;
+      if (Date.now() - quiet > QUIET_MS)
         throw new WindrowError('store.locked', 'the embedded server is there but accepts no connection', { where: this.where });
       await pause(20);
     }
@@ -126,7 +134,7 @@ export class EmbeddedServer implements Server {
   }
 
   /** The socket folder of the running server, which is started where there is none; null: ask again. */
-  async #serving(data: DataFolder, begun: number): Promise<string | null> {
+  async #serving(data: DataFolder, quiet: number): Promise<string | null> {
     const found = await readPostmaster(data.path);
     if (found !== null && (await isServing(found, data.path))) return found.sockets;
     if (found !== null) await clearAway(found, data.path);
@@ -138,13 +146,13 @@ export class EmbeddedServer implements Server {
       return (await readPostmaster(data.path))?.sockets ?? null;
     }
     const output = await readFrom(this.#log, before);
-    if (!isFull(output) && OCCUPIED.test(output) && Date.now() - begun < START_MS) return null;
+    if (!isFull(output) && OCCUPIED.test(output) && Date.now() - quiet < QUIET_MS) return null;
     throw programError('the embedded server', output, this.where);
   }
 
   /** A session that shows this process is there, or why there is none: a server on its way up or down, or gone. */
   async #present(sockets: string): Promise<pg.Client | 'starting' | 'away'> {
-    const presence = new pg.Client({ ...connection(sockets), application_name: 'windrow', keepAlive: true });
+    const presence = new pg.Client({ ...connection(sockets), application_name: `${PRESENCE_NAME}${process.pid}` });
     presence.on('error', () => undefined);
     try {
       await presence.connect();
@@ -176,6 +184,22 @@ export class EmbeddedServer implements Server {
 
 /** Another server has the data folder, or the processes of a killed one are still ending. */
 const OCCUPIED = /lock file "postmaster\.pid" already exists|shared memory block .* is still in use|lock file "postmaster\.pid" is empty/;
+
+/** Gives up the presence and takes the exclusive lock, if nobody else is there. */
+async function isLast(presence: pg.Client): Promise<boolean> {
+  await presence.query(`select pg_advisory_unlock_shared(${PRESENCE})`);
+  for (const begun = Date.now(); ; await pause(20)) {
+    const { rows } = await presence.query<{ alone: boolean }>(`select pg_try_advisory_lock(${PRESENCE}) as alone`);
+    if (rows[0]!.alone) return true;
+    // Sessions of a process that was killed a moment ago are about to end; others may stay.
+    const others = await presence.query<{ name: string }>(
+      `select a.application_name as name from pg_locks l join pg_stat_activity a using (pid)
+       where l.locktype = 'advisory' and (l.classid, l.objid) = (${PRESENCE}) and a.pid <> pg_backend_pid()`,
+    );
+    if (others.rows.some(({ name }) => isAlive(Number(name.slice(PRESENCE_NAME.length))))) return false;
+    if (Date.now() - begun > LEAVE_MS) return false;
+  }
+}
 
 /** Explicit in everything the driver would otherwise take from PG* variables. */
 const connection = (sockets: string): pg.ClientConfig => ({

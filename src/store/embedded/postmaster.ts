@@ -18,6 +18,7 @@ import { promisify } from 'node:util';
 import { WindrowError } from '../../core/errors.js';
 import { cannotRun, type DataFolder } from './data-folder.js';
 import { fileError } from './embedded-errors.js';
+import { isAlive, pause } from './processes.js';
 import { canRead, spawnAs, type ServerUser } from './server-user.js';
 
 /** Names the socket file; nothing listens on it. */
@@ -66,7 +67,7 @@ export async function isServing({ pid }: Postmaster, data: string): Promise<bool
  */
 export async function clearAway({ pid, sockets }: Postmaster, data: string): Promise<void> {
   if (sockets !== null) await removeSockets(sockets);
-  if (!processExists(pid)) return;
+  if (!isAlive(pid)) return;
   const file = join(data, 'postmaster.pid');
   const aside = `${file}.${randomBytes(6).toString('hex')}`;
   try {
@@ -77,15 +78,6 @@ export async function clearAway({ pid, sockets }: Postmaster, data: string): Pro
   const taken = parsePostmaster(await readFile(aside, 'utf8'));
   if (taken?.pid !== pid) await link(aside, file).catch(() => undefined);
   await unlink(aside);
-}
-
-function processExists(pid: number): boolean {
-  try {
-    process.kill(pid, 0);
-    return true;
-  } catch (error) {
-    return (error as NodeJS.ErrnoException).code !== 'ESRCH';
-  }
 }
 
 const SOCKETS = 'windrow-';
@@ -148,7 +140,12 @@ export interface Started {
  * @param log file that gets what the server prints
  * @throws store.embedded, store.full
  */
-export async function startPostmaster(postgres: string, { path, user }: DataFolder, log: string, settings: Readonly<Record<string, string>> = SETTINGS): Promise<Started> {
+export async function startPostmaster(
+  postgres: string,
+  { path, user }: DataFolder,
+  log: string,
+  settings: Readonly<Record<string, string>> = SETTINGS,
+): Promise<Started> {
   const sockets = await makeSockets(user);
   const output = await open(log, 'a').catch((error: unknown) => {
     throw fileError(error, 'write the log of the embedded server', log);
@@ -186,5 +183,3 @@ export async function stopPostmaster(data: string): Promise<void> {
   while ((await readPostmaster(data))?.pid === running.pid && (await isServing(running, data)) && Date.now() < deadline) await pause(10);
   if (running.sockets !== null) await removeSockets(running.sockets);
 }
-
-export const pause = (ms: number): Promise<void> => new Promise((resolve) => setTimeout(resolve, ms));
