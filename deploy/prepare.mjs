@@ -128,7 +128,17 @@ function sourceDigest() {
   return hash.digest('hex');
 }
 
+/** The kernels are a source of the compilation, so they come first; a project without any has no script for them. */
+function buildKernels() {
+  const script = at('deploy', 'build-kernels.mjs');
+  if (!existsSync(script)) return;
+  if (spawnSync(process.execPath, [script], { cwd: root, stdio: ['ignore', 2, 2] }).status !== 0) {
+    throw new Failure('the kernels could not be compiled; the messages are above');
+  }
+}
+
 function build() {
+  buildKernels();
   const digest = sourceDigest();
   const built = existsSync(stampFile) ? readFileSync(stampFile, 'utf8') : null;
   if (built === digest) return;

@@ -5,10 +5,10 @@
  * the point carries a flag and a sentence that says why.
  */
 import { WindrowError } from '../core/errors.js';
+import { defaultKernel } from '../linalg/default-kernel.js';
 import type { SpectralKernel } from '../linalg/kernel.js';
 import { normBound } from '../linalg/norm.js';
 import { mergingDistance } from '../linalg/precision.js';
-import { referenceKernel } from '../linalg/reference/reference-kernel.js';
 import { innerProduct, squaredNorm } from '../linalg/vector.js';
 import { validateVector } from '../linalg/validate.js';
 import type { System } from '../models/types.js';
@@ -30,7 +30,7 @@ const NORM_TOLERANCE = 1e-10;
  * @returns energies in the unit of H, ascending
  * @throws WindrowError matrix.dimension, matrix.not-finite, state.invalid, kernel.no-convergence
  */
-export function spectralMeasure(system: System, kernel: SpectralKernel = referenceKernel): MeasuredPoint {
+export function spectralMeasure(system: System, kernel: SpectralKernel = defaultKernel): MeasuredPoint {
   const { matrix, detected } = system;
   const prepared = system.prepared === detected ? null : system.prepared;
   checkStates(system);

@@ -5,11 +5,15 @@
  * sweep, the order of keys, the format of the file or the machine.
  */
 import { digest, type Json } from '../core/json.js';
+import { defaultKernel } from '../linalg/default-kernel.js';
 import type { Question } from '../statistics/types.js';
 import type { PointSpec } from './types.js';
 
-/** Names the build of the numerics. It changes whenever stored numbers would change by more than rounding. */
-export const METHOD_VERSION = 'w1-ts';
+/**
+ * Names the numerics: their version, which changes whenever stored numbers would change by more than rounding, and the build of the
+ * kernels that runs here, as builds differ in the last digits. Workers of one sweep have the same.
+ */
+export const METHOD_VERSION = `w2-${defaultKernel.name}`;
 
 /** Id of a point: one Hamiltonian with its two states. */
 export function pointId(spec: PointSpec): string {
