@@ -1,14 +1,14 @@
 /** Bosons on a ring or a line of sites. */
 import { z } from 'zod';
 import { binomial } from './combinatorics.js';
+import { totalRule } from './configuration-space.js';
 import { occupationLabels } from './labels.js';
 import { bonds, checkOnsite, geometryParameter, onsiteParameter, siteEnergies } from './lattice.js';
-import type { ProductBasis } from './product-basis.js';
 import { defineProductFamily } from './product-family.js';
 import { refusal } from './refusal.js';
 import { basisState } from './states.js';
 import type { Term } from './states.js';
-import type { SystemRequest } from './types.js';
+import type { ProductBasis, SystemRequest } from './types.js';
 
 /** The most a configuration entry holds. */
 const MOST_PARTICLES = 65_535;
@@ -124,6 +124,8 @@ export const boseHubbardChain = defineProductFamily<z.infer<typeof parameters>>(
   labels: (request) =>
     occupationLabels({ sites: request.size, levels: particlesOf(request) + 1, total: particlesOf(request), unit: 'bosons' }),
   hilbertDimension: (request) => binomial(particlesOf(request) + request.size - 1, particlesOf(request)),
+  rule: (request) => totalRule(request.size, particlesOf(request) + 1, particlesOf(request)),
+  moves: ({ size, parameters: { geometry } }) => 2 * bonds(size, geometry).length,
   // Each bond moves a boson either way, from the C(N + L − 2, N − 1) configurations that have one on the site it leaves.
   nonzeros(request) {
     const particles = particlesOf(request);

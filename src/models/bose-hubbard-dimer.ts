@@ -69,6 +69,10 @@ export const boseHubbardDimer = defineFamily<z.infer<typeof parameters>>({
       offDiagonal,
       support.map(([, right]) => right),
     );
-    return { matrix: sector.matrix, indexOf: ([, right]) => sector.indexOf([right]) };
+    return {
+      matrix: sector.matrix,
+      indexOf: ([, right]) => sector.indexOf([right]),
+      labelOf: (row) => sector.labelOf(row).flatMap((right) => [size - right, right]),
+    };
   },
 });

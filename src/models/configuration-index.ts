@@ -4,7 +4,7 @@
  * A configuration (one value < levels a site) is packed into 32-bit words, first site in the highest bits, so that comparing words
  * compares configurations. Lookup is an open-addressed hash table at most half full. A million states of 24 spins take about 16 MB.
  */
-export type Configuration = Uint16Array;
+import type { Configuration } from './types.js';
 
 export class ConfigurationIndex {
   readonly sites: number;

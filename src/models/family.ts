@@ -7,11 +7,13 @@
 import { canonicalJson } from '../core/json.js';
 import { WindrowError } from '../core/errors.js';
 import type { HermitianMatrix, StateVector } from '../linalg/matrix.js';
+import type { NumberedSpace } from './configuration-space.js';
+import { quenches } from './quench.js';
 import { checkCommon } from './request.js';
 import { refusal } from './refusal.js';
 import { canonicalState, resolveState } from './states.js';
 import type { Label, LabelReader, StateSpace, Term } from './states.js';
-import type { Extent, ModelFamily, StateSpec, System, SystemRequest } from './types.js';
+import type { Extent, ModelFamily, ProductBasis, ProductSpace, StateSpec, System, SystemRequest } from './types.js';
 
 export interface NamedState<P> {
   readonly name: string;
@@ -26,32 +28,53 @@ export interface Sector {
   readonly matrix: HermitianMatrix;
   /** Row of a label, or −1 for a label outside the sector. */
   indexOf(label: Label): number;
+  /** Label of a row; the inverse of indexOf. */
+  labelOf(row: number): Label;
 }
 
-export interface FamilyDefinition<P> extends Omit<ModelFamily<P>, 'states' | 'check' | 'canonical' | 'extent' | 'build'> {
+type Made = 'states' | 'check' | 'canonical' | 'extent' | 'build' | 'productSpace';
+
+export interface FamilyDefinition<P> extends Omit<ModelFamily<P>, Made> {
   readonly states: readonly NamedState<P>[];
   /** Checks that need more than one value, such as the length of a list. @throws WindrowError */
   checkParameters?(request: SystemRequest<P>): void;
   labels(request: SystemRequest<P>): LabelReader;
-  hilbertDimension(request: SystemRequest<P>): number;
+  /** @param support gives the labels of φ, for families whose conserved numbers are those of φ */
+  hilbertDimension(request: SystemRequest<P>, support: () => readonly Label[]): number;
+  /** The labels that share the conserved numbers of those given; all for null. Families without it have no random or uniform states. */
+  space?(request: SystemRequest<P>, like: readonly Label[] | null): NumberedSpace;
+  /** H on those labels, for families on a product basis. */
+  basis?(request: SystemRequest<P>): ProductBasis;
   /** @param support gives the labels of φ, for families that count its sector */
   extent(request: SystemRequest<P>, support: () => readonly Label[]): Extent;
   /** @param support labels of φ, distinct */
   sector(request: SystemRequest<P>, support: readonly Label[]): Sector;
 }
 
-function stateSpace<P>(definition: FamilyDefinition<P>, request: SystemRequest<P>): StateSpace {
+type QuenchReader<P> = ReturnType<typeof quenches<P>>;
+
+function stateSpace<P>(definition: FamilyDefinition<P>, request: SystemRequest<P>, quench: QuenchReader<P>): StateSpace {
   const names = definition.states.map((state) => state.name);
+  const namedTerms = (name: string): readonly Term[] | null | undefined =>
+    definition.states.find((candidate) => candidate.name === name)?.terms(request);
   return {
     ...definition.labels(request),
+    ...quench(request),
     names,
+    get fallback() {
+      return names.find((name) => namedTerms(name)?.length) ?? names[0];
+    },
     named(name, where) {
-      const state = definition.states.find((candidate) => candidate.name === name);
-      if (state === undefined) throw refusal('state.unknown', `${definition.name} has no state "${name}"`, where, name, names.join(', '));
-      const terms = state.terms(request);
-      if (terms === null)
-        throw refusal('state.invalid', `the state ${name} does not fit this system`, where, name, state.needs ?? 'another system');
+      const terms = namedTerms(name);
+      if (terms === undefined) throw refusal('state.unknown', `${definition.name} has no state "${name}"`, where, name, names.join(', '));
+      const needs = definition.states.find((state) => state.name === name)?.needs ?? 'another system';
+      if (terms === null) throw refusal('state.invalid', `the state ${name} does not fit this system`, where, name, needs);
       return terms;
+    },
+    labels(like, where) {
+      if (definition.space === undefined)
+        throw refusal('state.invalid', `${definition.name} has no random or uniform states`, where, 'random or uniform', 'another state');
+      return definition.space(request, like);
     },
   };
 }
@@ -83,13 +106,18 @@ function checkFinite(family: string, matrix: HermitianMatrix): void {
 
 /** The family of a definition: its `check`, `canonical` and `build`. */
 export function defineFamily<P>(definition: FamilyDefinition<P>): ModelFamily<P> {
+  const quench = quenches(definition);
   const states = (request: SystemRequest<P>): { prepared: readonly Term[]; detected: readonly Term[] } => {
     checkCommon(definition, request);
     definition.checkParameters?.(request);
-    const space = stateSpace(definition, request);
+    const space = stateSpace(definition, request, quench);
     const prepared = resolveState(space, request.prepared, 'prepare');
     const detected = request.detected === 'same' ? prepared : resolveState(space, request.detected, 'detect');
     return { prepared, detected };
+  };
+  const productSpace = (request: SystemRequest<P>, scope: 'conserved' | 'whole'): ProductSpace => {
+    const like = scope === 'whole' ? null : labelsOf(states(request).detected);
+    return { basis: definition.basis!(request), space: definition.space!(request, like) };
   };
   return {
     ...definition,
@@ -99,7 +127,7 @@ export function defineFamily<P>(definition: FamilyDefinition<P>): ModelFamily<P>
     canonical(request) {
       checkCommon(definition, request);
       definition.checkParameters?.(request);
-      const space = stateSpace(definition, request);
+      const space = stateSpace(definition, request, quench);
       const prepared = canonicalState(space, request.prepared, 'prepare');
       const detected: StateSpec = request.detected === 'same' ? 'same' : canonicalState(space, request.detected, 'detect');
       return {
@@ -119,12 +147,13 @@ export function defineFamily<P>(definition: FamilyDefinition<P>): ModelFamily<P>
       checkFinite(definition.name, sector.matrix);
       const phi = vectorOf(detected, sector);
       return {
-        hilbertDimension: definition.hilbertDimension(request),
+        hilbertDimension: definition.hilbertDimension(request, () => labelsOf(detected)),
         sectorDimension: sector.matrix.dimension,
         matrix: sector.matrix,
         detected: phi,
         prepared: prepared === detected ? phi : vectorOf(prepared, sector),
       };
     },
+    ...(definition.space === undefined || definition.basis === undefined ? {} : { productSpace }),
   };
 }

@@ -10,27 +10,10 @@
  */
 import { WindrowError } from '../core/errors.js';
 import { ConfigurationIndex } from './configuration-index.js';
-import type { Configuration } from './configuration-index.js';
 import type { Sector } from './family.js';
 import { RowStore } from './row-store.js';
 import type { Label } from './states.js';
-
-/** Reports <c'|H|c> of the configuration as it now stands (c') from the one that was handed in (c). */
-export type Emit = (re: number, im?: number) => void;
-
-export interface ProductBasis {
-  /** Length of a configuration. */
-  readonly sites: number;
-  /** Values a site takes: 0 … levels − 1, levels ≤ 65536. */
-  readonly levels: number;
-  /** <c|H|c> */
-  diagonal(configuration: Configuration): number;
-  /**
-   * Reports every c' ≠ c with <c'|H|c> ≠ 0: change the configuration in place, call `emit`, change it back. Both directions of a term
-   * (hop and its conjugate) are reported, each from the configuration it applies to; several reports of the same c' are summed.
-   */
-  connect(configuration: Configuration, emit: Emit): void;
-}
+import type { Emit, ProductBasis } from './types.js';
 
 /** Breadth-first search; calls `finished` after each configuration and stops where it returns false. */
 function search(
@@ -85,6 +68,10 @@ export function exploreSector(basis: ProductBasis, seeds: readonly Label[]): Sec
         scratch.set(label);
         const number = index.find(scratch);
         return number < 0 ? -1 : rank[number];
+      },
+      labelOf(row) {
+        index.read(order[row], scratch);
+        return [...scratch];
       },
     };
   } catch (cause) {

@@ -28,5 +28,6 @@ export function tridiagonalSector(diagonal: Float64Array, offDiagonal: Float64Ar
       offDiagonal: Float64Array.from({ length: Math.max(0, kept.length - 1) }, (_, k) => (couples(k) ? offDiagonal[kept[k]] : 0)),
     },
     indexOf: ([row = -1]) => rowOf[row] ?? -1,
+    labelOf: (row) => [kept[row]],
   };
 }

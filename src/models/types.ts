@@ -5,20 +5,38 @@
  * no clock, randomness only from the seed in the request. Energies are in the family's unit, ħ = 1.
  */
 import type { z } from 'zod';
+import type { Json } from '../core/json.js';
 import type { HermitianMatrix, StateVector } from '../linalg/matrix.js';
 
 /** An amplitude of a superposition: a real number or [real, imaginary]. */
 export type Amplitude = number | readonly [number, number];
 
 /**
- * A state as a user writes it and as it is identified: a name of the family, an occupation (or local quantum number) list, a site
- * (counted from 1), or a superposition. Superpositions are normalised when built.
+ * A state as a user writes it and as it is identified. Superpositions are normalised when built.
+ *
+ * - a name of the family
+ * - occupation: one occupation (or local quantum number) a site; product: the same as a text, one character a site
+ * - site: one particle on that site, counted from 1
+ * - random: a basis state drawn evenly, from those with the conserved numbers of `like` where it is given
+ * - uniform: the equal superposition of all basis states with the conserved numbers of `like`
+ * - ground-state: that of the same system at another coupling (in the family's scale `as`, its own by default) or with other parameters,
+ *   in the connected component(s) of H's graph that hold `within`, by default the first named state
+ * - superposition: amplitudes and states
  */
 export type StateSpec =
   | string
   | { readonly occupation: readonly number[] }
+  | { readonly product: string }
   | { readonly site: number }
+  | { readonly random: { readonly seed: number } | { readonly seed: number; readonly like: StateSpec } }
+  | { readonly uniform: { readonly like: StateSpec } }
+  | { readonly 'ground-state': QuenchSpec }
   | { readonly superposition: readonly (readonly [Amplitude, StateSpec])[] };
+
+/** coupling, as, parameters (a mapping of names to values), within (a state): all optional. */
+export interface QuenchSpec {
+  readonly [key: string]: Json;
+}
 
 export interface Disorder {
   /** Full width W of the uniform distribution [−W/2, W/2], in the family's energy unit. */
@@ -91,6 +109,52 @@ export interface ModelFamily<P = unknown> {
   /** Upper estimates before anything is built: sector dimension ≤ dimension, stored nonzeros, and the kernel's storage. */
   extent(request: SystemRequest<P>): Extent;
   build(request: SystemRequest<P>): System;
+  /**
+   * The product basis and H on it; absent where the family has none.
+   * @param scope 'conserved': configurations that have the conserved numbers of φ (what hilbertDimension counts); 'whole': all that the family
+   * allows at that size
+   * @throws WindrowError point.too-large where the numbering itself does not fit into memory, and what `check` throws
+   */
+  productSpace?(request: SystemRequest<P>, scope: 'conserved' | 'whole'): ProductSpace;
+}
+
+/** One small integer a site: an occupation, a local level. */
+export type Configuration = Uint16Array;
+
+/** Reports <c'|H|c> of the configuration as it now stands (c') from the one that was handed in (c). */
+export type Emit = (re: number, im?: number) => void;
+
+/** H on a basis of configurations, element by element. */
+export interface ProductBasis {
+  /** Length of a configuration. */
+  readonly sites: number;
+  /** Values a site takes: 0 … levels − 1, levels ≤ 65536. */
+  readonly levels: number;
+  /** <c|H|c> */
+  diagonal(configuration: Configuration): number;
+  /**
+   * Reports every c' ≠ c with <c'|H|c> ≠ 0: change the configuration in place, call `emit`, change it back. Both directions of a term
+   * (hop and its conjugate) are reported, each from the configuration it applies to; several reports of the same c' are summed.
+   */
+  connect(configuration: Configuration, emit: Emit): void;
+}
+
+/** A set of configurations in ascending lexicographic order, each found from its number and back without storing any of them. */
+export interface ConfigurationSpace {
+  readonly sites: number;
+  readonly levels: number;
+  /** Number of configurations; exact up to 2^53. */
+  readonly dimension: number;
+  /** Number of a configuration, from 0; −1 for one outside the space. */
+  rank(configuration: ArrayLike<number>): number;
+  /** Writes the configuration of a number (0 ≤ rank < dimension ≤ 2^53) into `out`, length `sites`. */
+  read(rank: number, out: Configuration): void;
+}
+
+/** The product basis of a system, for counting sectors without a matrix. H leads from any configuration only to others of the space. */
+export interface ProductSpace {
+  readonly basis: ProductBasis;
+  readonly space: ConfigurationSpace;
 }
 
 export interface Extent {

@@ -22,7 +22,18 @@ const state: z.ZodType = z.lazy(() =>
   z.union([
     name,
     z.strictObject({ occupation: z.array(z.number()) }),
+    z.strictObject({ product: name }),
     z.strictObject({ site: z.int() }),
+    z.strictObject({ random: z.strictObject({ seed: z.int(), like: state.optional() }) }),
+    z.strictObject({ uniform: z.strictObject({ like: state }) }),
+    z.strictObject({
+      'ground-state': z.strictObject({
+        coupling: z.number().optional(),
+        as: name.optional(),
+        parameters: z.record(z.string(), z.json()).optional(),
+        within: state.optional(),
+      }),
+    }),
     z.strictObject({ superposition: z.array(z.tuple([amplitude, state])) }),
   ]),
 );

@@ -1,5 +1,5 @@
 /** Numbers and names as people read them: tables, axis labels, captions. Exports don't use this; they keep full precision. */
-import type { StateSpec } from '../models/types.js';
+import type { QuenchSpec, StateSpec } from '../models/types.js';
 import type { ScheduleSpec } from '../schedules/types.js';
 import type { Coordinates } from '../analysis/samples.js';
 
@@ -47,17 +47,29 @@ export function scheduleText(spec: ScheduleSpec): string {
   return [family, ...shown.map(([name, value]) => `${name} ${parameterText(value)}`)].join(', ');
 }
 
-/** For example 'all-left', 'site 3', 'occupation [4, 0]'. */
+/** For example 'all-left', 'site 3', 'occupation [4, 0]', 'ground-state (coupling 2, within neel)'. */
 export function stateText(state: StateSpec): string {
   if (typeof state === 'string') return state;
   if ('occupation' in state) return `occupation [${state.occupation.join(', ')}]`;
   if ('site' in state) return `site ${state.site}`;
+  if ('product' in state) return `product ${state.product}`;
+  if ('random' in state)
+    return `random (seed ${state.random.seed}${'like' in state.random ? `, like ${stateText(state.random.like)}` : ''})`;
+  if ('uniform' in state) return `uniform like ${stateText(state.uniform.like)}`;
+  if ('ground-state' in state) return groundStateText(state['ground-state']);
   return state.superposition
     .map(([amplitude, part]) => {
       const factor = typeof amplitude === 'number' ? formatNumber(amplitude) : `(${amplitude.map((x) => formatNumber(x)).join(', ')}i)`;
       return `${factor} ${stateText(part)}`;
     })
     .join(' + ');
+}
+
+function groundStateText({ coupling, parameters, within }: QuenchSpec): string {
+  const values = Object.entries({ ...(coupling === undefined ? {} : { coupling }), ...(parameters as object | undefined) });
+  const parts = values.map(([name, value]) => `${name} ${parameterText(value)}`);
+  if (within !== undefined) parts.push(`within ${stateText(within as StateSpec)}`);
+  return `ground-state (${parts.join(', ')})`;
 }
 
 /** For example 'tilt 0.1, size 12'. */

@@ -101,7 +101,16 @@ const seed = z.int().min(0).describe('seed of the random stream; the same seed g
 
 const amplitude = z.union([z.number(), z.tuple([z.number(), z.number()])], { error: 'a number or [real, imaginary]' });
 
-const STATE_FORMS = 'a state name, { occupation: [...] }, { site: n }, { superposition: [[amplitude, state], …] }';
+const STATE_FORMS =
+  'a state name, { occupation: [...] }, { product: "…" }, { site: n }, { random: { seed, like } }, { uniform: { like } }, ' +
+  '{ ground-state: { coupling, as, parameters, within } }, { superposition: [[amplitude, state], …] }';
+
+const quench = mapping({
+  coupling: z.number().optional().describe('coupling of the other Hamiltonian; default that of the point'),
+  as: z.string().optional().describe("scale of that coupling; default the family's own"),
+  parameters: z.record(z.string(), z.json()).optional().describe('parameters that differ from those of the point'),
+  within: z.lazy(() => stateValue).optional(),
+}).describe('the ground state of another coupling, in the sector of `within` (default: the first named state)');
 
 /** A state as a family resolves it; whether it fits the model is the family's to say. */
 export const stateValue: z.ZodType = z.lazy(() =>
@@ -109,7 +118,18 @@ export const stateValue: z.ZodType = z.lazy(() =>
     [
       z.string().min(1),
       mapping({ occupation: z.array(z.number()).min(1).describe('occupation or local quantum number of each site') }),
+      mapping({ product: z.string().min(1).describe('the same as a quoted text, one character a site') }),
       mapping({ site: z.int().min(1).describe('one particle on this site, counted from 1') }),
+      mapping({
+        random: mapping({
+          seed: z.int().describe('seed of the draw'),
+          like: stateValue.optional(),
+        }).describe('a basis state drawn evenly, from those with the conserved numbers of `like`'),
+      }),
+      mapping({
+        uniform: mapping({ like: stateValue }).describe('equal superposition of basis states'),
+      }),
+      mapping({ 'ground-state': quench }),
       mapping({
         superposition: z
           .array(z.tuple([amplitude, stateValue]))

@@ -2,7 +2,7 @@ import fc from 'fast-check';
 import { describe, expect, it } from 'vitest';
 import { ConfigurationIndex } from '../../../src/models/configuration-index.js';
 import { exploreSector, measureSector } from '../../../src/models/product-basis.js';
-import type { ProductBasis } from '../../../src/models/product-basis.js';
+import type { ProductBasis } from '../../../src/models/types.js';
 import { levelsOf } from '../../support/exact-spectrum.js';
 
 /** Pairs hop by two sites, 1001 <-> 0110, on an open chain: the space splits into exponentially many sectors. */
