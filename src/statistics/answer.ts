@@ -52,7 +52,7 @@ export function answer(measured: MeasuredPoint, question: Question): CellFields 
   const recurrent = recurrentWeight(bright, windows);
   const overlap = measured.overlap[0] ** 2 + measured.overlap[1] ** 2;
 
-  const levels = mergeResonant(bright, distribution);
+  const levels = mergeResonant(bright, distribution, pairs ?? undefined);
   if (levels.phaseTolerance > PHASE_LIMIT) {
     notes.set(
       'doubtful',
@@ -60,7 +60,8 @@ export function answer(measured: MeasuredPoint, question: Question): CellFields 
     );
   }
   const probability = visibleProbability(levels);
-  const moments = probability > 0 ? resolvedMoments(levels, detectionMoments(levels.measure, distribution, efficiency), notes) : null;
+  const moments =
+    probability > 0 ? resolvedMoments(levels, detectionMoments(levels.measure, distribution, efficiency, levels.pairs), notes) : null;
   const detection = monitoredDetection(levels.measure, distribution, { efficiency, budget });
   const within: BudgetStatistics = budgetStatistics(detection, probability, budget);
   detection.close();

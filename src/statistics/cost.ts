@@ -16,11 +16,13 @@ export function answerCost(levels: number, question: Question): AnswerCost {
   const pairs = (n * (n - 1)) / 2;
   const { budget, sampling } = question;
   const random = buildSchedule(question.schedule).random;
-  // Averaged step 24, transition step 8 operations a pair; a vector step 22 a level. Characteristic functions about 80 a pair.
-  const steps = random ? budget * 32 * pairs : budget * 22 * n;
-  const moments = 80 * pairs + 60 * pairs + (random ? n ** 3 / 3 : 0);
+  const { intervals } = question.schedule;
+  const characteristic = 80 + (typeof intervals === 'object' ? 40 * intervals.length : 0);
+  // Averaged step 18, transition step 6 operations a pair; a vector step 22 a level. χ is evaluated a few times for every pair.
+  const steps = random ? budget * 24 * pairs : budget * 22 * n;
+  const moments = ((random ? 2 : 4) * characteristic + 100) * pairs + (random ? n ** 3 / 3 : 0);
   const curve = 4 * budget * Math.log2(4 * budget + 1) * 10;
   const draws = sampling === null ? 0 : sampling.draws * (budget * 60 * n + curve);
-  const planes = random ? 14 * pairs + n * n * 2 : 6 * pairs;
+  const planes = random ? 6 * pairs + 2 * n * n : 0;
   return { flops: steps + moments + draws, bytes: 8 * (planes + 20 * n + (sampling === null ? 0 : 16 * budget)) };
 }

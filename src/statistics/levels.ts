@@ -8,7 +8,7 @@
 import { WindrowError } from '../core/errors.js';
 import type { IntervalDistribution } from '../schedules/types.js';
 import type { SpectralMeasure } from '../spectral/types.js';
-import { pairComplements } from './pairs.js';
+import { pairComplements, pairRows, type PairTable, type Rows } from './pairs.js';
 
 /** True where the overlaps are the weights: the prepared state is the detected one. */
 export function isReturn(measure: SpectralMeasure): boolean {
@@ -39,23 +39,34 @@ export function brightPart(measure: SpectralMeasure): SpectralMeasure {
 
 export interface MergedLevels {
   readonly measure: SpectralMeasure;
+  /** 1 − χ between the levels of that measure */
+  readonly pairs: Rows;
   /** two phases closer than this (radians) are one */
   readonly phaseTolerance: number;
   /** least |1 − χ| between two of the levels that are left; Infinity with one level */
   readonly closest: number;
 }
 
-/** Merges the levels that the schedule cannot tell apart. The measure itself comes back where there are none. */
-export function mergeResonant(measure: SpectralMeasure, distribution: IntervalDistribution): MergedLevels {
+/**
+ * Merges the levels that the schedule cannot tell apart. The measure itself comes back where there are none.
+ * @param table the pair table of the measure, where it is at hand
+ */
+export function mergeResonant(measure: SpectralMeasure, distribution: IntervalDistribution, table?: PairTable): MergedLevels {
   const { energies } = measure;
   const n = energies.length;
   const scale = energies.reduce((largest, energy) => Math.max(largest, Math.abs(energy)), 0);
   const phaseTolerance = Math.max(64, 4 * n) * Number.EPSILON * scale * distribution.mean;
-  const group = distribution.random
-    ? latticeGroups(measure, distribution, phaseTolerance)
-    : phaseGroups(energies, distribution.mean, phaseTolerance);
+  if (!distribution.random) {
+    const group = phaseGroups(energies, distribution.mean, phaseTolerance);
+    const merged = group === null ? measure : addUp(measure, group);
+    return { measure: merged, pairs: pairRows(merged, distribution), phaseTolerance, closest: closestPhases(merged, distribution) };
+  }
+  const pairs = table ?? pairComplements(measure, distribution);
+  const group = latticeGroups(pairs, distribution, phaseTolerance);
   const merged = group === null ? measure : addUp(measure, group);
-  return { measure: merged, phaseTolerance, closest: closestPair(merged, distribution) };
+  const left = group === null ? pairs : pairComplements(merged, distribution);
+  const closest = left.re.reduce((least, re, p) => Math.min(least, Math.hypot(re, left.im[p])), Infinity);
+  return { measure: merged, pairs: left, phaseTolerance, closest };
 }
 
 /** E_j τ mod 2π, in [0, 2π). */
@@ -97,11 +108,10 @@ function phaseGroups(energies: Float64Array, interval: number, tolerance: number
   return groups + 1 === energies.length ? null : group;
 }
 
-function latticeGroups(measure: SpectralMeasure, distribution: IntervalDistribution, tolerance: number): Int32Array | null {
+function latticeGroups(pairs: PairTable, distribution: IntervalDistribution, tolerance: number): Int32Array | null {
   // Without a lattice |χ(x)| = 1 only at x = 0, and the levels of a measure are distinct.
   if (distribution.lattice === null) return null;
-  const n = measure.energies.length;
-  const pairs = pairComplements(measure, distribution);
+  const n = pairs.levels;
   const group = Int32Array.from({ length: n }, (_, i) => i);
   let merged = false;
   for (let i = 0, p = 0; i < n; i++) {
@@ -132,21 +142,12 @@ function addUp(measure: SpectralMeasure, group: Int32Array): SpectralMeasure {
   return { energies, weights, overlapRe: arrange(sum(measure.overlapRe)), overlapIm };
 }
 
-function closestPair(measure: SpectralMeasure, distribution: IntervalDistribution): number {
-  const { energies } = measure;
+function closestPhases({ energies }: SpectralMeasure, distribution: IntervalDistribution): number {
+  if (energies.length === 1) return Infinity;
+  const order = aroundCircle(phasesOf(energies, distribution.mean));
   const out = new Float64Array(2);
-  let closest = Infinity;
-  const look = (i: number, j: number): void => {
-    distribution.complement(energies[i] - energies[j], out);
-    closest = Math.min(closest, Math.hypot(out[0], out[1]));
-  };
-  if (!distribution.random) {
-    const order = aroundCircle(phasesOf(energies, distribution.mean));
-    for (let k = 0; k < order.length; k++) if (order.length > 1) look(order[k], order[(k + 1) % order.length]);
-  } else if (distribution.lattice === null) {
-    for (let i = 1; i < energies.length; i++) look(i, i - 1);
-  } else {
-    for (let i = 0; i < energies.length; i++) for (let j = 0; j < i; j++) look(i, j);
-  }
-  return closest;
+  return order.reduce((least, level, k) => {
+    distribution.complement(energies[level] - energies[order[(k + 1) % order.length]], out);
+    return Math.min(least, Math.hypot(out[0], out[1]));
+  }, Infinity);
 }

@@ -19,7 +19,7 @@ import { CholeskyDecomposition, Matrix } from 'ml-matrix';
 import type { IntervalDistribution } from '../schedules/types.js';
 import type { SpectralMeasure } from '../spectral/types.js';
 import { isReturn } from './levels.js';
-import { pairComplements, type PairTable } from './pairs.js';
+import { pairComplements, pairRows, type Rows } from './pairs.js';
 import { amplitudeReduction } from './stroboscopic.js';
 
 /** P = Σ |q_j|²/v_j over levels merged where χ = 1. (Dark states of quantum search cause imperfect detection, Phys. Rev. Research 2, 043107 (2020), 10.1103/PhysRevResearch.2.043107.) */
@@ -33,19 +33,13 @@ export function detectionProbability(measure: SpectralMeasure): number {
   return Math.min(1, sum);
 }
 
-/** Hermitian matrix in units of t_i t_j: packed upper half and diagonal. */
-export interface ScaledHermitian {
-  readonly re: Float64Array;
-  readonly im: Float64Array;
+/** Hermitian matrix in units of t_i t_j: the upper half row by row, and the diagonal. */
+export interface ScaledHermitian extends Rows {
   readonly diagonal: Float64Array;
 }
 
-/** A right-hand side: G packed, and the diagonal of S. */
-interface Source {
-  readonly re: Float64Array;
-  readonly im: Float64Array;
-  readonly diagonal: Float64Array;
-}
+/** A right-hand side: the rows of G, and the diagonal of S. */
+export type Source = ScaledHermitian;
 
 export interface DetectionMoments {
   /** mean of n given detection */
@@ -58,18 +52,23 @@ export interface DetectionMoments {
  * Mean and variance of the number of measurements at the first click, given that it comes.
  * For return the mean is (number of levels)/η (Recurrence for discrete time unitary evolutions, Commun. Math. Phys. 320, 543 (2013),
  * 10.1007/s00220-012-1645-2, for η = 1 and a fixed interval).
+ * @param pairs 1 − χ between the levels, where it is at hand
  * @returns null where P = 0
  */
-export function detectionMoments(measure: SpectralMeasure, distribution: IntervalDistribution, efficiency = 1): DetectionMoments | null {
+export function detectionMoments(
+  measure: SpectralMeasure,
+  distribution: IntervalDistribution,
+  efficiency = 1,
+  pairs: Rows = distribution.random ? pairComplements(measure, distribution) : pairRows(measure, distribution),
+): DetectionMoments | null {
   const n = measure.energies.length;
   const probability = detectionProbability(measure);
   if (!(probability > 0)) return null;
-  const solver = momentSolver(measure, distribution, efficiency);
+  const solver = momentSolver(measure, distribution, efficiency, pairs);
   if (isReturn(measure)) {
     // M_1 = 1/η exactly, as K² = 1 − ηφφ†.
-    const first = measure.weights.map((weight) => 1 / (efficiency * weight));
     const mean = n / efficiency;
-    const second = trace(solver.solve({ ...differences(first), diagonal: first }), measure.weights);
+    const second = trace(solver.solve(diagonalSource(measure.weights.map((weight) => 1 / (efficiency * weight)))), measure.weights);
     return { mean, variance: Math.max(0, 2 * second - mean - mean * mean) };
   }
   const first = solver.solve(preparedSource(measure));
@@ -88,53 +87,69 @@ export function preparedSource(measure: SpectralMeasure): Source {
   const n = weights.length;
   const aRe = overlapRe.map((value, i) => value / weights[i]);
   const aIm = overlapIm?.map((value, i) => value / weights[i]) ?? new Float64Array(n);
-  const re = new Float64Array((n * (n - 1)) / 2);
-  const im = new Float64Array(re.length);
-  for (let i = 0, p = 0; i < n; i++) {
-    for (let j = i + 1; j < n; j++, p++) {
-      const dRe = aRe[i] - aRe[j];
-      const dIm = aIm[i] - aIm[j];
-      re[p] = -(dRe * dRe + dIm * dIm) / 2;
-      im[p] = dIm * aRe[j] - dRe * aIm[j];
-    }
-  }
-  return { re, im, diagonal: aRe.map((value, i) => value * value + aIm[i] * aIm[i]) };
+  return {
+    diagonal: aRe.map((value, i) => value * value + aIm[i] * aIm[i]),
+    fill(i, re, im) {
+      for (let j = i + 1; j < n; j++) {
+        const dRe = aRe[i] - aRe[j];
+        const dIm = aIm[i] - aIm[j];
+        re[j] = -(dRe * dRe + dIm * dIm) / 2;
+        im[j] = dIm * aRe[j] - dRe * aIm[j];
+      }
+    },
+  };
 }
 
-/** G of a matrix without off-diagonal elements. */
-function differences(diagonal: Float64Array): Pick<Source, 're' | 'im'> {
-  const n = diagonal.length;
-  const re = new Float64Array((n * (n - 1)) / 2);
-  for (let i = 0, p = 0; i < n; i++) for (let j = i + 1; j < n; j++, p++) re[p] = -(diagonal[i] + diagonal[j]) / 2;
-  return { re, im: new Float64Array(re.length) };
+/** S without off-diagonal elements. */
+export function diagonalSource(diagonal: Float64Array): Source {
+  return {
+    diagonal,
+    fill(i, re, im) {
+      for (let j = i + 1; j < diagonal.length; j++) {
+        re[j] = -(diagonal[i] + diagonal[j]) / 2;
+        im[j] = 0;
+      }
+    },
+  };
 }
 
 /** S = a solution. */
 export function asSource(matrix: ScaledHermitian): Source {
-  const { re } = differences(matrix.diagonal);
-  for (let p = 0; p < re.length; p++) re[p] += matrix.re[p];
-  return { re, im: matrix.im, diagonal: matrix.diagonal };
+  const { diagonal } = matrix;
+  return {
+    diagonal,
+    fill(i, re, im) {
+      matrix.fill(i, re, im);
+      for (let j = i + 1; j < diagonal.length; j++) re[j] -= (diagonal[i] + diagonal[j]) / 2;
+    },
+  };
 }
 
 export interface MomentSolver {
   solve(source: Source): ScaledHermitian;
 }
 
-export function momentSolver(measure: SpectralMeasure, distribution: IntervalDistribution, efficiency: number): MomentSolver {
+export function momentSolver(measure: SpectralMeasure, distribution: IntervalDistribution, efficiency: number, pairs: Rows): MomentSolver {
   const { weights: v } = measure;
   const n = v.length;
   const kappa = amplitudeReduction(efficiency);
-  const { re: bRe, im: bIm } = inverses(pairComplements(measure, distribution));
-  const connection = distribution.random ? connectedMatrix(v, bRe, kappa) : uniformMatrix(v, kappa);
+  const inverse = inverseRows(pairs, n);
+  const connection = distribution.random ? connectedMatrix(v, inverse, kappa) : uniformMatrix(v, kappa);
+  const bRe = new Float64Array(n);
+  const bIm = new Float64Array(n);
+  const gRe = new Float64Array(n);
+  const gIm = new Float64Array(n);
   return {
     solve(source) {
       // h_i = Σ_j C_ij G_ij v_j
       const hRe = new Float64Array(n);
       const hIm = new Float64Array(n);
-      for (let i = 0, p = 0; i < n; i++) {
-        for (let j = i + 1; j < n; j++, p++) {
-          const re = (bRe[p] - 1) * source.re[p] - bIm[p] * source.im[p];
-          const im = (bRe[p] - 1) * source.im[p] + bIm[p] * source.re[p];
+      for (let i = 0; i < n; i++) {
+        inverse.fill(i, bRe, bIm);
+        source.fill(i, gRe, gIm);
+        for (let j = i + 1; j < n; j++) {
+          const re = (bRe[j] - 1) * gRe[j] - bIm[j] * gIm[j];
+          const im = (bRe[j] - 1) * gIm[j] + bIm[j] * gRe[j];
           hRe[i] += re * v[j];
           hIm[i] += im * v[j];
           hRe[j] += re * v[i];
@@ -144,34 +159,46 @@ export function momentSolver(measure: SpectralMeasure, distribution: IntervalDis
       const z = connection(hIm);
       const s = source.diagonal.reduce((sum, value, i) => sum + v[i] * value, 0) / efficiency;
       const held = source.diagonal.map((value, i) => (kappa * kappa * s + value) / (2 * kappa) - hRe[i]);
-      const re = new Float64Array(bRe.length);
-      const im = new Float64Array(bRe.length);
-      for (let i = 0, p = 0; i < n; i++) {
-        for (let j = i + 1; j < n; j++, p++) {
+      for (let i = 0; i < n; i++) {
+        inverse.fill(i, bRe, bIm);
+        for (let j = i + 1; j < n; j++) {
           const turned = kappa * (z[i] - z[j]);
-          held[i] -= bIm[p] * v[j] * turned;
-          held[j] -= bIm[p] * v[i] * turned;
-          const gIm = source.im[p] - turned;
-          re[p] = bRe[p] * source.re[p] - bIm[p] * gIm;
-          im[p] = bRe[p] * gIm + bIm[p] * source.re[p];
+          held[i] -= bIm[j] * v[j] * turned;
+          held[j] -= bIm[j] * v[i] * turned;
         }
       }
-      return { re, im, diagonal: held.map((value, i) => value / v[i]) };
+      const rowRe = new Float64Array(n);
+      const rowIm = new Float64Array(n);
+      return {
+        diagonal: held.map((value, i) => value / v[i]),
+        fill(i, re, im) {
+          inverse.fill(i, rowRe, rowIm);
+          source.fill(i, re, im);
+          for (let j = i + 1; j < n; j++) {
+            const g = re[j];
+            const turned = im[j] - kappa * (z[i] - z[j]);
+            re[j] = rowRe[j] * g - rowIm[j] * turned;
+            im[j] = rowRe[j] * turned + rowIm[j] * g;
+          }
+        },
+      };
     },
   };
 }
 
 /** B = 1/(1 − X). */
-function inverses(pairs: PairTable): { readonly re: Float64Array; readonly im: Float64Array } {
-  const re = new Float64Array(pairs.re.length);
-  const im = new Float64Array(pairs.re.length);
-  for (let p = 0; p < re.length; p++) {
-    // Divided twice rather than by the square, which could underflow.
-    const size = Math.hypot(pairs.re[p], pairs.im[p]);
-    re[p] = pairs.re[p] / size / size;
-    im[p] = -pairs.im[p] / size / size;
-  }
-  return { re, im };
+function inverseRows(pairs: Rows, n: number): Rows {
+  return {
+    fill(i, re, im) {
+      pairs.fill(i, re, im);
+      for (let j = i + 1; j < n; j++) {
+        // Divided twice rather than by the square, which could underflow.
+        const size = Math.hypot(re[j], im[j]);
+        re[j] = re[j] / size / size;
+        im[j] = -im[j] / size / size;
+      }
+    },
+  };
 }
 
 type LinearSolve = (right: Float64Array) => Float64Array;
@@ -184,14 +211,17 @@ function uniformMatrix(v: Float64Array, kappa: number): LinearSolve {
   };
 }
 
-function connectedMatrix(v: Float64Array, bRe: Float64Array, kappa: number): LinearSolve {
+function connectedMatrix(v: Float64Array, inverse: Rows, kappa: number): LinearSolve {
   const n = v.length;
   const t = v.map(Math.sqrt);
   const matrix = Matrix.zeros(n, n);
   const diagonal = new Float64Array(n).fill(1);
-  for (let i = 0, p = 0; i < n; i++) {
-    for (let j = i + 1; j < n; j++, p++) {
-      const c = kappa * (bRe[p] - 1);
+  const bRe = new Float64Array(n);
+  const bIm = new Float64Array(n);
+  for (let i = 0; i < n; i++) {
+    inverse.fill(i, bRe, bIm);
+    for (let j = i + 1; j < n; j++) {
+      const c = kappa * (bRe[j] - 1);
       diagonal[i] += c * v[j];
       diagonal[j] += c * v[i];
       matrix.set(i, j, -c * t[i] * t[j]);
@@ -205,9 +235,10 @@ function connectedMatrix(v: Float64Array, bRe: Float64Array, kappa: number): Lin
     const z = t.map((value, i) => scaled.get(i, 0) / value);
     // One Jacobi sweep: the division by a tiny t_i has magnified the error of its component; the equation itself gives it back.
     const rest = right.slice();
-    for (let i = 0, p = 0; i < n; i++) {
-      for (let j = i + 1; j < n; j++, p++) {
-        const c = kappa * (bRe[p] - 1);
+    for (let i = 0; i < n; i++) {
+      inverse.fill(i, bRe, bIm);
+      for (let j = i + 1; j < n; j++) {
+        const c = kappa * (bRe[j] - 1);
         rest[i] += c * v[j] * z[j];
         rest[j] += c * v[i] * z[i];
       }
