@@ -31,7 +31,7 @@ function migrationsFolder(): string {
   const folders = ['../../migrations/', '../../../migrations/'].map((path) => fileURLToPath(new URL(path, import.meta.url)));
   const found = folders.find((folder) => existsSync(folder));
   if (found === undefined)
-    throw new WindrowError('internal.invariant', 'the folder of migrations is missing', { where: folders[folders.length - 1]! });
+    throw new WindrowError('internal.invariant', 'the folder of migrations is missing', { where: folders[folders.length - 1] });
   return found;
 }
 
@@ -41,7 +41,7 @@ export async function schemaState(client: ClientBase, folder = migrationsFolder(
     .map((file) => file.slice(0, -'.sql'.length))
     .sort();
   const table = await client.query<{ present: boolean }>('select to_regclass($1) is not null as present', [`${SCHEMA}.${TABLE}`]);
-  if (!table.rows[0]!.present) return { pending: own, newer: [] };
+  if (!table.rows[0].present) return { pending: own, newer: [] };
   const { rows } = await client.query<{ name: string }>(`select name from ${SCHEMA}.${TABLE}`);
   const run = new Set(rows.map(({ name }) => name));
   return {
@@ -78,7 +78,7 @@ export async function migrate(client: ClientBase, where: string, folder = migrat
       dir: folder,
       direction: 'up',
       schema: SCHEMA,
-      createSchema: !schema.rows[0]!.present,
+      createSchema: !schema.rows[0].present,
       migrationsTable: TABLE,
       singleTransaction: true,
       advisoryLockMode: 'wait',

@@ -110,19 +110,19 @@ export function resultStoreSuite(name: string, prepare: () => Promise<StoreUnder
       it('leaves out complete points and lists open questions of measured ones and reasons of failed ones', async () => {
         const { grid, asked } = await sweepWith('partly', 4, 2);
         await store.save({
-          points: [pointResult(grid[0]!), pointResult(grid[1]!)],
-          cells: [cellResult(grid[0]!, asked[0]!), cellResult(grid[0]!, asked[1]!), cellResult(grid[1]!, asked[0]!)],
-          failures: [failureOf(grid[2]!)],
+          points: [pointResult(grid[0]), pointResult(grid[1])],
+          cells: [cellResult(grid[0], asked[0]), cellResult(grid[0], asked[1]), cellResult(grid[1], asked[0])],
+          failures: [failureOf(grid[2])],
         });
         expect(await other.enrol('partly', grid)).toEqual([
-          { id: grid[1]!.id, measured: true, questionIds: [asked[1]!.id], failure: null },
+          { id: grid[1].id, measured: true, questionIds: [asked[1].id], failure: null },
           {
-            id: grid[2]!.id,
+            id: grid[2].id,
             measured: false,
             questionIds: asked.map(({ id }) => id),
             failure: { code: 'point.too-large', message: 'needs 12 GB' },
           },
-          { id: grid[3]!.id, measured: false, questionIds: asked.map(({ id }) => id), failure: null },
+          { id: grid[3].id, measured: false, questionIds: asked.map(({ id }) => id), failure: null },
         ]);
       });
 
@@ -131,14 +131,14 @@ export function resultStoreSuite(name: string, prepare: () => Promise<StoreUnder
         await store.registerSweep(sweepOf('twice', 2, asked));
         const places = [gridPoint(0, 'twice'), { ...gridPoint(1, 'twice'), coordinates: { coupling: -1 } }];
         expect(await store.enrol('twice', places)).toHaveLength(1);
-        await store.save({ points: [pointResult(places[0]!)], cells: [cellResult(places[0]!, asked[0]!)], failures: [] });
+        await store.save({ points: [pointResult(places[0])], cells: [cellResult(places[0], asked[0])], failures: [] });
         expect(await store.progress('twice')).toMatchObject({ points: 2, cells: 2, storedPoints: 2, storedCells: 2 });
         expect((await rowsOf('twice')).map((row) => row.coordinates)).toEqual(places.map(({ coordinates }) => coordinates));
       });
 
       it('shares points between sweeps: what one has computed the other need not', async () => {
         const { grid } = await sweepWith('first', 2, 1);
-        await store.save({ points: [pointResult(grid[0]!)], cells: [], failures: [] });
+        await store.save({ points: [pointResult(grid[0])], cells: [], failures: [] });
         await store.registerSweep(sweepOf('second', 2, [questionRecord(0, 'of the second')]));
         expect((await other.enrol('second', grid)).map((point) => point.measured)).toEqual([true, false]);
       });
@@ -153,21 +153,21 @@ export function resultStoreSuite(name: string, prepare: () => Promise<StoreUnder
     describe('saving', () => {
       it('is idempotent: a stored row is left as it is', async () => {
         const { grid, asked } = await sweepWith('same', 1, 1);
-        const first = pointResult(grid[0]!, measured(returnMeasure([1], [1]), { method: 'lanczos-ql' }));
-        await store.save({ points: [first], cells: [cellResult(grid[0]!, asked[0]!, { winding_number: 5 })], failures: [] });
-        const second = pointResult(grid[0]!, measured(returnMeasure([2], [1]), { method: 'householder-ql' }));
-        await other.save({ points: [second], cells: [cellResult(grid[0]!, asked[0]!, { winding_number: 6 })], failures: [] });
+        const first = pointResult(grid[0], measured(returnMeasure([1], [1]), { method: 'lanczos-ql' }));
+        await store.save({ points: [first], cells: [cellResult(grid[0], asked[0], { winding_number: 5 })], failures: [] });
+        const second = pointResult(grid[0], measured(returnMeasure([2], [1]), { method: 'householder-ql' }));
+        await other.save({ points: [second], cells: [cellResult(grid[0], asked[0], { winding_number: 6 })], failures: [] });
         const [row] = await rowsOf('same');
         expect(row?.point?.method).toBe('lanczos-ql');
         expect(row?.fields?.winding_number).toBe(5);
-        expect((await store.measures([grid[0]!.id])).get(grid[0]!.id)).toEqual(first.measured);
+        expect((await store.measures([grid[0].id])).get(grid[0].id)).toEqual(first.measured);
       });
 
       it('is one transaction: nothing of a batch that is refused is kept', async () => {
         const { grid, asked } = await sweepWith('whole', 2, 1);
         const batch = {
-          points: [pointResult(grid[0]!)],
-          cells: [cellResult(grid[0]!, asked[0]!), cellResult(grid[1]!, { id: idOf('no such question') })],
+          points: [pointResult(grid[0])],
+          cells: [cellResult(grid[0], asked[0]), cellResult(grid[1], { id: idOf('no such question') })],
           failures: [],
         };
         await expect(store.save(batch)).rejects.toMatchObject({ code: 'internal.invariant' });
@@ -202,13 +202,13 @@ export function resultStoreSuite(name: string, prepare: () => Promise<StoreUnder
         await store.save({
           points: [],
           cells: [],
-          failures: [failureOf(grid[0]!), failureOf(grid[1]!), failureOf(grid[2]!, 'another "reason"')],
+          failures: [failureOf(grid[0]), failureOf(grid[1]), failureOf(grid[2], 'another "reason"')],
         });
         expect((await other.progress('failing')).failures).toEqual([
           { code: 'point.too-large', message: 'needs 12 GB', count: 2 },
           { code: 'point.too-large', message: 'another "reason"', count: 1 },
         ]);
-        await store.save({ points: [pointResult(grid[0]!)], cells: [], failures: [] });
+        await store.save({ points: [pointResult(grid[0])], cells: [], failures: [] });
         expect((await other.progress('failing')).failedPoints).toBe(2);
         expect(await other.clearFailures('failing')).toBe(2);
         expect(await store.clearFailures('failing')).toBe(0);
@@ -218,7 +218,7 @@ export function resultStoreSuite(name: string, prepare: () => Promise<StoreUnder
       it('clears only the failures of its sweep', async () => {
         const one = await sweepWith('one', 1, 1);
         const two = await sweepWith('two', 1, 1);
-        await store.save({ points: [], cells: [], failures: [failureOf(one.grid[0]!), failureOf(two.grid[0]!)] });
+        await store.save({ points: [], cells: [], failures: [failureOf(one.grid[0]), failureOf(two.grid[0])] });
         expect(await store.clearFailures('one')).toBe(1);
         expect((await store.progress('two')).failedPoints).toBe(1);
       });
@@ -291,8 +291,8 @@ export function resultStoreSuite(name: string, prepare: () => Promise<StoreUnder
           flag_reasons: [''],
         };
         await store.save({
-          points: [pointResult(grid[0]!, { ...measured(), fields: point })],
-          cells: [cellResult(grid[0]!, asked[0]!, cell)],
+          points: [pointResult(grid[0], { ...measured(), fields: point })],
+          cells: [cellResult(grid[0], asked[0], cell)],
           failures: [],
         });
         const [row] = await rowsOf('fields', undefined, other);
@@ -304,10 +304,10 @@ export function resultStoreSuite(name: string, prepare: () => Promise<StoreUnder
     describe('measures', () => {
       it('answers for stored ids only', async () => {
         const { grid } = await sweepWith('measures', 3, 1);
-        await store.save({ points: [pointResult(grid[0]!), pointResult(grid[2]!)], cells: [], failures: [] });
+        await store.save({ points: [pointResult(grid[0]), pointResult(grid[2])], cells: [], failures: [] });
         const found = await other.measures(grid.map(({ id }) => id));
-        expect(new Set(found.keys())).toEqual(new Set([grid[0]!.id, grid[2]!.id]));
-        expect(found.get(grid[0]!.id)).toEqual(measured());
+        expect(new Set(found.keys())).toEqual(new Set([grid[0].id, grid[2].id]));
+        expect(found.get(grid[0].id)).toEqual(measured());
         expect((await store.measures([])).size).toBe(0);
       });
 
@@ -327,9 +327,9 @@ export function resultStoreSuite(name: string, prepare: () => Promise<StoreUnder
       it('come in the grid order, one for every enrolled point and question', async () => {
         const { grid, asked } = await sweepWith('rows', 3, 2);
         await store.save({
-          points: [pointResult(grid[1]!)],
-          cells: [cellResult(grid[1]!, asked[1]!, { winding_number: 7 })],
-          failures: [failureOf(grid[2]!)],
+          points: [pointResult(grid[1])],
+          cells: [cellResult(grid[1], asked[1], { winding_number: 7 })],
+          failures: [failureOf(grid[2])],
         });
         const rows = await rowsOf('rows', undefined, other);
         expect(rows.map((row) => [row.ordinal, row.questionOrdinal])).toEqual([
@@ -342,10 +342,10 @@ export function resultStoreSuite(name: string, prepare: () => Promise<StoreUnder
         ]);
         const common = (ordinal: number, question: number) => ({
           ordinal,
-          coordinates: grid[ordinal]!.coordinates,
-          pointId: grid[ordinal]!.id,
-          spec: grid[ordinal]!.spec,
-          question: asked[question]!.question,
+          coordinates: grid[ordinal].coordinates,
+          pointId: grid[ordinal].id,
+          spec: grid[ordinal].spec,
+          question: asked[question].question,
           questionOrdinal: question,
         });
         const empty = { cellId: null, fields: null, failure: null };
@@ -354,7 +354,7 @@ export function resultStoreSuite(name: string, prepare: () => Promise<StoreUnder
         expect(rows[2]).toEqual({ ...common(1, 0), ...empty, point: pointFields() });
         expect(rows[3]).toEqual({
           ...common(1, 1),
-          cellId: cellResult(grid[1]!, asked[1]!).id,
+          cellId: cellResult(grid[1], asked[1]).id,
           point: pointFields(),
           fields: cellFields({ winding_number: 7 }),
           failure: null,
@@ -370,7 +370,7 @@ export function resultStoreSuite(name: string, prepare: () => Promise<StoreUnder
         for await (const row of store.cells({ sweep: 'long' })) {
           // Saved while the rows are read: a reader of one snapshot does not see it.
           if (row.ordinal === 0 && row.questionOrdinal === 0)
-            await other.save({ points: [pointResult(grid[1299]!)], cells: [cellResult(grid[1299]!, asked[0]!)], failures: [] });
+            await other.save({ points: [pointResult(grid[1299])], cells: [cellResult(grid[1299], asked[0])], failures: [] });
           expect(row.fields).toBeNull();
           seen.push(row.ordinal * 2 + row.questionOrdinal);
         }

@@ -171,8 +171,8 @@ describe('embedded store', () => {
     const [first, second] = await Promise.all([0, 1].map(() => prepareBinaries({ ...found, folder }, asRoot ? NOBODY : null, cache)));
     expect(first).toEqual(second);
     expect(readdirSync(cache)).toEqual([`postgresql-${found.version}`]);
-    expect(first!.postgres.startsWith(cache)).toBe(true);
-    expect(statSync(first!.postgres).mode & 0o555).toBe(0o555);
+    expect(first.postgres.startsWith(cache)).toBe(true);
+    expect(statSync(first.postgres).mode & 0o555).toBe(0o555);
   });
 });
 

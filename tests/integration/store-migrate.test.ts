@@ -48,7 +48,7 @@ describe('migrations', () => {
     const stores = await Promise.all(Array.from({ length: 20 }, () => openPostgresStore({ url: database.url, connections: 1 })));
     try {
       await Promise.all(stores.map((store) => store.migrate()));
-      expect(await stores[0]!.listSweeps()).toEqual([]);
+      expect(await stores[0].listSweeps()).toEqual([]);
     } finally {
       await Promise.all(stores.map((store) => store.close()));
     }
@@ -58,7 +58,7 @@ describe('migrations', () => {
 
   it('leave the search path of their connection as it was', async () => {
     await connected(async (client) => {
-      const path = async () => (await client.query<{ search_path: string }>('show search_path')).rows[0]!.search_path;
+      const path = async () => (await client.query<{ search_path: string }>('show search_path')).rows[0].search_path;
       const before = await path();
       writeFileSync(join(folder, '0900_addition.sql'), 'create table windrow.addition (x integer);');
       await migrate(client, 'test', folder);

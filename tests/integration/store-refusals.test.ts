@@ -106,7 +106,7 @@ describe('a store whose connections break', () => {
     const grid = Array.from({ length: 1500 }, (_, ordinal) => gridPoint(ordinal, `broken ${ordinal}`));
     await store.registerSweep(sweepOf('broken', grid.length, asked));
     await store.enrol('broken', grid);
-    await store.save({ points: grid.map((point) => pointResult(point)), cells: [cellResult(grid[0]!, asked[0]!)], failures: [] });
+    await store.save({ points: grid.map((point) => pointResult(point)), cells: [cellResult(grid[0], asked[0])], failures: [] });
     const read = async (): Promise<void> => {
       for await (const row of store.cells({ sweep: 'broken' })) if (row.ordinal === 10) await breakConnections();
     };
@@ -126,6 +126,10 @@ describe('a store whose connections break', () => {
 
   it('gives all digits back from a server that is set to print fewer', async () => {
     await database.query(`alter database ${name()} set extra_float_digits = -5`);
+    const plain = new pg.Client({ connectionString: database.url });
+    await plain.connect();
+    expect((await plain.query<{ third: number }>('select 1::float8 / 3 as third')).rows[0]?.third).not.toBe(1 / 3);
+    await plain.end();
     const store = await database.open();
     const asked = questionRecord(0, 'digits');
     const grid = gridPoint(0, 'digits');

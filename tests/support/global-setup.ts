@@ -3,7 +3,7 @@
  * starts none; what is used is printed. Each run has its own migrated template, which the databases of the files are cloned from.
  */
 import { randomBytes } from 'node:crypto';
-import { createServer } from 'node:http';
+import { createServer, type Server } from 'node:http';
 import type { AddressInfo } from 'node:net';
 import pg from 'pg';
 import type { TestProject } from 'vitest/node';
@@ -27,28 +27,32 @@ interface Offered extends DatabaseOffer {
   readonly server: PostgresForTests;
 }
 
-export default async function setup(project: TestProject): Promise<() => Promise<void>> {
-  let offered: Promise<Offered> | null = null;
-  const listener = createServer((_request, response) => {
+let offered: Promise<Offered> | null = null;
+let listener: Server | null = null;
+
+export async function setup(project: TestProject): Promise<void> {
+  const server = createServer((_request, response) => {
     offered ??= offer();
     offered.then(
       ({ url, template }) => response.end(JSON.stringify({ url, template } satisfies DatabaseOffer)),
       (error: unknown) => response.writeHead(500).end(String(error)),
     );
   });
-  await new Promise<void>((resolve) => listener.listen(0, '127.0.0.1', resolve));
-  project.provide('databaseOffer', `http://127.0.0.1:${String((listener.address() as AddressInfo).port)}`);
-  return async () => {
-    listener.closeAllConnections();
-    listener.close();
-    const made = await offered?.catch(() => null);
-    if (!made) return;
-    try {
-      await administer(made.url, `drop database ${made.template} with (force)`);
-    } finally {
-      await made.server.stop();
-    }
-  };
+  await new Promise<void>((resolve) => server.listen(0, '127.0.0.1', resolve));
+  project.provide('databaseOffer', `http://127.0.0.1:${(server.address() as AddressInfo).port}`);
+  listener = server;
+}
+
+export async function teardown(): Promise<void> {
+  listener?.closeAllConnections();
+  listener?.close();
+  const made = await offered?.catch(() => null);
+  if (!made) return;
+  try {
+    await administer(made.url, `drop database ${made.template} with (force)`);
+  } finally {
+    await made.server.stop();
+  }
 }
 
 async function offer(): Promise<Offered> {

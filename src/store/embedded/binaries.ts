@@ -61,7 +61,7 @@ export async function prepareBinaries({ folder, version }: BinaryPackage, user: 
   const usable = speakable(folder) && (await linkLibraries(folder)) && canRead(join(folder, 'native/bin/postgres'), user);
   const home = usable ? folder : await copy(folder, join(cache, `postgresql-${version}`));
   const bin = join(home, 'native/bin');
-  return { initdb: join(bin, 'initdb'), postgres: join(bin, 'postgres'), major: version.split('.')[0]! };
+  return { initdb: join(bin, 'initdb'), postgres: join(bin, 'postgres'), major: version.split('.')[0] };
 }
 
 function cacheFolder(): string {

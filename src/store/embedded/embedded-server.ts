@@ -188,9 +188,10 @@ const OCCUPIED = /lock file "postmaster\.pid" already exists|shared memory block
 /** Gives up the presence and takes the exclusive lock, if nobody else is there. */
 async function isLast(presence: pg.Client): Promise<boolean> {
   await presence.query(`select pg_advisory_unlock_shared(${PRESENCE})`);
-  for (const begun = Date.now(); ; await pause(20)) {
+  const begun = Date.now();
+  for (;;) {
     const { rows } = await presence.query<{ alone: boolean }>(`select pg_try_advisory_lock(${PRESENCE}) as alone`);
-    if (rows[0]!.alone) return true;
+    if (rows[0].alone) return true;
     // Sessions of a process that was killed a moment ago are about to end; others may stay.
     const others = await presence.query<{ name: string }>(
       `select a.application_name as name from pg_locks l join pg_stat_activity a using (pid)
@@ -198,6 +199,7 @@ async function isLast(presence: pg.Client): Promise<boolean> {
     );
     if (others.rows.some(({ name }) => isAlive(Number(name.slice(PRESENCE_NAME.length))))) return false;
     if (Date.now() - begun > LEAVE_MS) return false;
+    await pause(20);
   }
 }
 

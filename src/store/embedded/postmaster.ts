@@ -43,7 +43,7 @@ function parsePostmaster(text: string): Postmaster | null {
   const lines = text.split('\n');
   const pid = Number(lines[0]);
   if (!Number.isInteger(pid) || pid <= 0) return null;
-  return { pid, sockets: lines.length > 5 && lines[4] !== '' ? lines[4]! : null, ready: lines[7]?.trim() === 'ready' };
+  return { pid, sockets: lines.length > 5 && lines[4] !== '' ? lines[4] : null, ready: lines[7]?.trim() === 'ready' };
 }
 
 /** Whether the process is a living PostgreSQL of the folder's owner. */
@@ -52,7 +52,7 @@ export async function isServing({ pid }: Postmaster, data: string): Promise<bool
   if (process.platform !== 'linux') {
     const ps = await promisify(execFile)('ps', ['-o', 'uid=,stat=,comm=', '-p', String(pid)]).catch(() => null);
     const [owner, state, ...command] = (ps?.stdout ?? '').trim().split(/\s+/);
-    return Number(owner) === uid && !state!.startsWith('Z') && basename(command.join(' ')) === 'postgres';
+    return Number(owner) === uid && !state.startsWith('Z') && basename(command.join(' ')) === 'postgres';
   }
   const text = await readFile(`/proc/${pid}/stat`, 'utf8').catch(() => '');
   const owner = await stat(`/proc/${pid}`).catch(() => null);

@@ -41,7 +41,9 @@ export function parseDoubles(text: string): Float64Array {
   return text === '{}' ? new Float64Array(0) : Float64Array.from(text.slice(1, -1).split(','), Number);
 }
 
-const parsers = new Map<number, (text: string) => unknown>([
+type Parser = (text: string) => unknown;
+
+const parsers = new Map<number, Parser>([
   [OID.bytea, (text) => text.slice(2)],
   [OID.int8, Number],
   [OID.float8, Number],
@@ -52,7 +54,7 @@ const parsers = new Map<number, (text: string) => unknown>([
 ]);
 
 /** Type parsers of windrow's connections; the driver's own ones serve the rest. */
-export const typeParsers: CustomTypesConfig = {
+export const typeParsers: CustomTypesConfig & { getTypeParser(oid: number, format?: 'text' | 'binary'): Parser } = {
   getTypeParser: (oid: number, format?: 'text' | 'binary') =>
-    (format === 'binary' ? undefined : parsers.get(oid)) ?? types.getTypeParser(oid, format),
+    (format === 'binary' ? undefined : parsers.get(oid)) ?? (types.getTypeParser as (oid: number, format?: string) => Parser)(oid, format),
 };

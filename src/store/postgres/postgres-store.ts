@@ -42,7 +42,7 @@ export async function storeOn(server: Server): Promise<ResultStore> {
   try {
     await database.session(async (client) => {
       const { rows } = await client.query<{ version: string }>('select current_setting($1) as version', ['server_version_num']);
-      refuseOld(Number(rows[0]!.version), server.where);
+      refuseOld(Number(rows[0].version), server.where);
       refuseNewer(await schemaState(client), server.where);
     });
   } catch (error) {
@@ -147,7 +147,7 @@ class PostgresStore implements ResultStore {
     const key = BigInt.asIntN(64, BigInt(`0x${digest(['windrow lock', name]).slice(0, 16)}`)).toString();
     const outcome = await this.#database.session(async (client) => {
       const { rows } = await client.query<{ locked: boolean }>('select pg_try_advisory_lock($1) as locked', [key]);
-      if (!rows[0]!.locked) return null;
+      if (!rows[0].locked) return null;
       const [settled] = await Promise.allSettled([work()]);
       // On a lost session there is nothing left to unlock, and the outcome of the work counts.
       await client.query('select pg_advisory_unlock($1)', [key]).catch(() => undefined);
