@@ -66,7 +66,7 @@ export function boundaryOverview(boundaries: readonly Boundary[]): string {
   const questions = new Map(boundaries.map(({ questionOrdinal, question }) => [questionOrdinal, question]));
   const places = [...groupBy(boundaries, ({ at }) => JSON.stringify(at)).values()];
   return renderTable(places, [
-    { title: 'at', value: ([first]) => coordinatesText((first).at) },
+    { title: 'at', value: ([first]) => coordinatesText(first.at) },
     ...[...questions].map(([ordinal, question]) => ({
       title: scheduleText(question.schedule),
       value: (place: readonly Boundary[]) => {

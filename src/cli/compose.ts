@@ -8,7 +8,7 @@ import { resolve } from 'node:path';
 import { fileURLToPath } from 'node:url';
 import { WindrowError } from '../core/errors.js';
 import type { Settings } from '../core/settings.js';
-import { openBullMqQueue, type BullMqQueue } from '../queue/bullmq/bullmq-queue.js';
+import type { BullMqQueue } from '../queue/bullmq/bullmq-queue.js';
 import { openComputePool } from '../queue/compute-pool.js';
 import { openInProcessQueue } from '../queue/in-process/in-process-queue.js';
 import type { Lane, Lanes } from '../queue/lanes.js';
@@ -107,6 +107,8 @@ export async function openCluster(context: Context, consumed?: readonly Lane[]):
       found: 'not set',
     });
   }
+  // Loaded where it is needed: it would double the start of every other command.
+  const { openBullMqQueue } = await import('../queue/bullmq/bullmq-queue.js');
   const queue = await openBullMqQueue({
     url: redis,
     prefix: settings.redis_prefix,

@@ -5,8 +5,7 @@ import type { Quantity } from '../analysis/quantities.js';
 import type { Json } from '../core/json.js';
 import { panelTitle, quantityTitle, resolutionText } from '../report/labels.js';
 import { pagesOf, phaseDiagramSpec } from '../report/phase-diagram.js';
-import { writeFigure } from '../report/render-figure.js';
-import { colourDepth, figurePainter } from '../report/terminal-colour.js';
+import { colourDepth, figurePainter, type Paint } from '../report/terminal-colour.js';
 import { renderTerminalMap } from '../report/terminal-map.js';
 import type { ResultStore } from '../store/types.js';
 import { boundariesOf, type BoundaryChoice } from './boundary-options.js';
@@ -44,13 +43,13 @@ export async function readMapView(
 }
 
 /** Every map as text, one below the other. */
-export function mapText(
+export async function mapText(
   { sweep, quantity, maps, boundaries, choice }: MapView,
   { out, environment }: Pick<Context, 'out' | 'environment'>,
-): string {
+): Promise<string> {
   const range = valueRange(maps) ?? ([0, 1] as const);
   const colour = colourDepth(out.isTTY === true, environment);
-  const paint = figurePainter();
+  const paint: Paint = colour === 'none' ? (text) => text : await figurePainter();
   if (maps.length === 0) return 'No cells yet.';
   return maps
     .map((map) =>
@@ -129,6 +128,7 @@ export function mapRows({ maps, quantity }: MapView): { columns: string[]; rows:
 /** Writes the phase diagrams and returns their paths. @throws WindrowError `report.unwritable` */
 export async function writeMapFigures(view: MapView, folder: string): Promise<string[]> {
   const { sweep, quantity, maps, boundaries, choice } = view;
+  const { writeFigure } = await import('../report/render-figure.js');
   const pages = pagesOf(maps);
   const paths: string[] = [];
   for (const [index, page] of pages.entries()) {

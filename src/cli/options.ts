@@ -1,5 +1,5 @@
 /** Options that several commands share, and the small languages of their values. */
-import type { Command} from 'commander';
+import type { Command } from 'commander';
 import { Option } from 'commander';
 import { parse as parseYaml } from 'yaml';
 import { WindrowError } from '../core/errors.js';
@@ -65,7 +65,12 @@ export function parseQuestions(text: string | undefined): number[] | undefined {
 }
 
 /** @param allowed what the number must be, in words */
-export function parseNumber(option: string, text: string, allowed = 'a number', accepts = Number.isFinite): number {
+export function parseNumber(
+  option: string,
+  text: string,
+  allowed = 'a number',
+  accepts: (value: number) => boolean = Number.isFinite,
+): number {
   const value = text.trim() === '' ? NaN : Number(text);
   if (!accepts(value)) throw usage(option, text, allowed);
   return value;

@@ -7,7 +7,7 @@ import type { Context } from './context.js';
 
 export interface Printable {
   /** For people. */
-  readonly table: () => string;
+  readonly table: () => string | Promise<string>;
   /** One document. */
   readonly json: () => Json;
   /** Flat rows with the columns of a CSV file. */
@@ -23,7 +23,7 @@ export async function writeText(out: Writable, text: string): Promise<void> {
 }
 
 export async function print({ out, format }: Pick<Context, 'out' | 'format'>, data: Printable): Promise<void> {
-  if (format === 'table') return writeText(out, `${data.table()}\n`);
+  if (format === 'table') return writeText(out, `${await data.table()}\n`);
   if (format === 'json') return writeText(out, `${JSON.stringify(data.json(), null, 2)}\n`);
   const { columns, rows } = data.csv();
   return writeCsv(rows, columns, out);

@@ -88,12 +88,12 @@ export function failureTable(failures: SweepSummary['failures']): string {
   ]);
 }
 
-function reportText(context: Context, { view, figures }: Report, folder: string): string {
+async function reportText(context: Context, { view, figures }: Report, folder: string): Promise<string> {
   const shown = view.maps.slice(0, SHOWN_MAPS);
   const rest = view.maps.length - shown.length;
   const name = view.sweep.grid.name;
   return [
-    mapText({ ...view, maps: shown }, context),
+    await mapText({ ...view, maps: shown }, context),
     ...(rest > 0 ? [`${rest} more: \`windrow map ${name} --question …\``] : []),
     `Boundary along ${view.sweep.labels.axisTitle('coupling')}; ${view.choice.words}\n\n${boundaryTable(view.boundaries)}`,
     `Figures in ${folder}:\n${figures.map((path) => `  ${path}`).join('\n')}`,
@@ -128,7 +128,8 @@ export async function finish(context: Context, store: ResultStore, summary: Swee
   if (report !== undefined && summary.outcome === 'done') say(context, `windrow: drawing figures into ${join(report)}`);
   const made = report === undefined || summary.outcome !== 'done' ? null : await makeReport(store, summary.sweep, report);
   await print(context, {
-    table: () => [summaryText(context, summary), ...(made && report !== undefined ? [reportText(context, made, report)] : [])].join('\n\n'),
+    table: async () =>
+      [summaryText(context, summary), ...(made && report !== undefined ? [await reportText(context, made, report)] : [])].join('\n\n'),
     json: () => ({
       ...flat,
       failures: failures as Json,

@@ -1,6 +1,4 @@
 /** Colour in a terminal: how much there is, and blocks in the palette of the figures. */
-import { scheme } from 'vega';
-
 export type ColourDepth = 'none' | '256' | 'truecolor';
 
 /** Writes text on the palette's colour at a share of the range; null is the ground of cells without a value. */
@@ -40,7 +38,8 @@ export function painter(palette: (share: number) => string): Paint {
   };
 }
 
-/** The perceptually uniform palette that the figures use. */
-export function figurePainter(): Paint {
+/** The perceptually uniform palette that the figures use. The plotting library is loaded here, not by every command that starts. */
+export async function figurePainter(): Promise<Paint> {
+  const { scheme } = await import('vega');
   return painter(scheme('viridis') as unknown as (share: number) => string);
 }

@@ -6,7 +6,6 @@ import type { Json } from '../../core/json.js';
 import { cutFigureSpec } from '../../report/cut-figure.js';
 import { coordinatesText, formatNumber, scheduleText } from '../../report/format.js';
 import { quantityTitle } from '../../report/labels.js';
-import { writeFigure } from '../../report/render-figure.js';
 import { renderTable } from '../../report/table.js';
 import { openStore } from '../compose.js';
 import { EXIT, type Io, say } from '../context.js';
@@ -87,6 +86,7 @@ export function cutCommand(program: Command, io: Io): void {
         csv: () => cutRows(curves, along, quantity),
       });
       if (options.figures !== undefined) {
+        const { writeFigure } = await import('../../report/render-figure.js');
         const spec = cutFigureSpec({ curves, along, quantity, labels: sweep.labels, notes: sweep.notes });
         const file = `cut-${quantity.name.replaceAll('_', '-')}`;
         for (const path of await writeFigure(spec, options.figures, file)) say(context, `wrote ${path}`);
