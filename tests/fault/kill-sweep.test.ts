@@ -19,19 +19,16 @@ import { waitFor } from '../support/wait-for.js';
 
 const KILLS = 20;
 
-/** 1,500 cheap points in at least six jobs; every kill has points of its own, told apart by the tilt. */
+/** 36 points of some ten milliseconds each, in a dozen jobs; every kill has points of its own, told apart by the tilt. */
 const fileOf = (kill: number) => ({
   name: `killed-${kill}`,
   model: 'bose-hubbard-dimer',
-  size: { from: 2, to: 6, step: 1 },
-  coupling: { from: 0.1, to: 3, count: 300 },
+  size: [40, 48, 56],
+  coupling: { from: 0.5, to: 5, count: 12, as: 'interaction-ratio' },
   parameters: { tilt: kill / 100 },
   prepare: 'all-left',
-  schedules: [
-    { family: 'exponential', mean: 0.5 },
-    { family: 'fixed', interval: 0.37 },
-  ],
-  budget: 40,
+  schedules: [{ family: 'exponential', mean: 0.25 }],
+  budget: 2000,
 });
 
 describe('kill -9 in mid-sweep', () => {
@@ -57,29 +54,33 @@ describe('kill -9 in mid-sweep', () => {
   const storedCells = async (name: string): Promise<number> =>
     (await store.findSweep(name)) === null ? 0 : (await store.progress(name)).storedCells;
 
-  it.each(Array.from({ length: KILLS }, (_, kill) => kill))('kill %i', async (kill) => {
-    const file = fileOf(kill);
-    const sweep = sweepOf(file);
-    const path = join(folder, `${file.name}.json`);
-    writeFileSync(path, JSON.stringify(file));
+  it.each(Array.from({ length: KILLS }, (_, kill) => kill))(
+    'kill %i',
+    async (kill) => {
+      const file = fileOf(kill);
+      const sweep = sweepOf(file);
+      const path = join(folder, `${file.name}.json`);
+      writeFileSync(path, JSON.stringify(file));
 
-    const victim = startCli(['sweep', path, '--store', join(folder, 'store'), '--threads', '2']);
-    // A quarter of the kills falls anywhere from the start of the process on, the others after the first rows.
-    if (kill % 4 !== 0) await waitFor(async () => victim.ended() || (await storedCells(file.name)) > 0, 'the first rows');
-    await new Promise((resolve) => setTimeout(resolve, draw.uniform() * (kill % 4 === 0 ? 1500 : 400)));
-    victim.kill('SIGKILL');
-    await victim.end;
-    const left = await storedCells(file.name);
-    midSweep.push(left > 0 && left < sweep.grid.cells);
+      const victim = startCli(['sweep', path, '--store', join(folder, 'store'), '--threads', '2']);
+      // A quarter of the kills falls anywhere from the start of the process on, the others after the first rows.
+      if (kill % 4 !== 0) await waitFor(async () => victim.ended() || (await storedCells(file.name)) > 0, 'the first rows');
+      await new Promise((resolve) => setTimeout(resolve, draw.uniform() * (kill % 4 === 0 ? 1500 : 400)));
+      victim.kill('SIGKILL');
+      await victim.end;
+      const left = await storedCells(file.name);
+      midSweep.push(left > 0 && left < sweep.grid.cells);
 
-    // Killed before it was registered, a sweep has no name yet: then the file is run again.
-    const known = (await store.findSweep(file.name)) !== null;
-    const resumed = startCli([...(known ? ['resume', file.name] : ['sweep', path]), '--store', join(folder, 'store'), '--threads', '2']);
-    expect(await resumed.end, resumed.stderr()).toBe(0);
+      // Killed before it was registered, a sweep has no name yet: then the file is run again.
+      const known = (await store.findSweep(file.name)) !== null;
+      const resumed = startCli([...(known ? ['resume', file.name] : ['sweep', path]), '--store', join(folder, 'store'), '--threads', '2']);
+      expect(await resumed.end, resumed.stderr()).toBe(0);
 
-    await runSweep({ ...sweep, store: undisturbed, queue: openInProcessQueue(), pool: inlinePool(), memory: 2 ** 30 });
-    expect(await rowsOf(store, file.name)).toEqual(await rowsOf(undisturbed, file.name));
-  });
+      await runSweep({ ...sweep, store: undisturbed, queue: openInProcessQueue(), pool: inlinePool(), memory: 2 ** 30 });
+      expect(await rowsOf(store, file.name)).toEqual(await rowsOf(undisturbed, file.name));
+    },
+    300_000,
+  );
 
   it('met sweeps that were half done', () => {
     expect(midSweep.filter(Boolean).length).toBeGreaterThanOrEqual(5);
