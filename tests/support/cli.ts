@@ -13,9 +13,11 @@ export interface CliProcess {
   stderr(): string;
 }
 
-export function startCli(args: readonly string[], env: Readonly<Record<string, string>> = {}): CliProcess {
+/** @param through a command that runs it, e.g. in another network */
+export function startCli(args: readonly string[], env: Readonly<Record<string, string>> = {}, through: readonly string[] = []): CliProcess {
   const { DATABASE_URL: _database, REDIS_URL: _redis, ...inherited } = process.env;
-  const child = spawn(process.execPath, [MAIN, ...args], { env: { ...inherited, ...env }, stdio: ['ignore', 'pipe', 'pipe'] });
+  const [command, ...rest] = [...through, process.execPath, MAIN, ...args];
+  const child = spawn(command, rest, { env: { ...inherited, ...env }, stdio: ['ignore', 'pipe', 'pipe'] });
   let out = '';
   let err = '';
   let over = false;

@@ -58,8 +58,16 @@ export interface OwnPostgresOptions {
   readonly settings?: Readonly<Record<string, string>>;
 }
 
+export interface OwnPostgres extends PostgresForTests {
+  readonly port: number;
+  /** kill -9 of the whole server, as when the machine's memory runs out */
+  kill(): Promise<void>;
+  /** Starts it again on the same port and folder. */
+  restart(): Promise<void>;
+}
+
 /** A server of the caller's own, to be killed or configured. */
-export async function ownPostgres({ access = '', settings = {} }: OwnPostgresOptions = {}): Promise<PostgresForTests> {
+export async function ownPostgres({ access = '', settings = {} }: OwnPostgresOptions = {}): Promise<OwnPostgres> {
   await clearAbandoned();
   const folder = await mkdtemp(join(tmpdir(), `${FOLDER}${process.pid}-`));
   // As root, the server runs as another user, who must be able to enter.
@@ -73,14 +81,31 @@ export async function ownPostgres({ access = '', settings = {} }: OwnPostgresOpt
   const port = await freePort();
   // Tests that look at durability use the embedded store, which does sync.
   const own = { ...SETTINGS, listen_addresses: '127.0.0.1', port: String(port), fsync: 'off', ...settings };
-  const started = await startPostmaster(postgres, data, log, own);
-  while ((await readPostmaster(data.path))?.ready !== true)
-    if ((await Promise.race([started.ended, sleep(20)])) === 'ended')
-      throw new Error(`PostgreSQL for tests does not start: ${await readFile(log, 'utf8')}`);
-  started.release();
+  /** @returns whether it came up */
+  const start = async (): Promise<boolean> => {
+    const started = await startPostmaster(postgres, data, log, own);
+    while ((await readPostmaster(data.path))?.ready !== true)
+      if ((await Promise.race([started.ended, sleep(20)])) === 'ended') return false;
+    started.release();
+    return true;
+  };
+  if (!(await start())) throw new Error(`PostgreSQL for tests does not start: ${await readFile(log, 'utf8')}`);
   return {
     url: `postgresql://windrow@127.0.0.1:${String(port)}/postgres`,
     source: 'the programs of the embedded store',
+    port,
+    async kill() {
+      const pid = (await readPostmaster(data.path))!.pid;
+      process.kill(pid, 'SIGKILL');
+      while (isAlive(pid)) await sleep(10);
+    },
+    async restart() {
+      // Until the orphaned sessions have ended, a new server refuses the folder.
+      for (let attempt = 0; !(await start()); attempt++) {
+        if (attempt === 100) throw new Error(`PostgreSQL for tests does not start again: ${await readFile(log, 'utf8')}`);
+        await sleep(100);
+      }
+    },
     stop: async () => {
       await stopPostmaster(data.path);
       await rm(folder, { recursive: true, force: true });
