@@ -8,12 +8,16 @@ import { withRetry } from '../core/retry.js';
 import type { SweepProgress } from '../store/types.js';
 import { drainedTo, feed, type FeedOptions } from './feed.js';
 
-/** Without a new row for this long, the store is compared again although the queue is not empty (with other sweeps' jobs, perhaps). */
 const PATIENCE_MS = 300_000;
-/** Walks in a row that may hand out jobs without a single new row. */
+/** Walks in a row whose jobs may all end without a single new row. */
 const FRUITLESS_WALKS = 3;
 
 export interface FeedUntilCompleteOptions extends FeedOptions {
+  /**
+   * Milliseconds without a new row after which the store is compared again although the queue is not empty: it may hold other sweeps'
+   * jobs only. A costly point that takes longer is handed out again meanwhile, which its queue knows to be the same job.
+   */
+  readonly patienceMs?: number | undefined;
   /** the last progress seen, by whoever follows it; null before the first look */
   readonly latest: () => SweepProgress | null;
   /** what went wrong with the last job that failed in this process, if that is known */
@@ -28,11 +32,11 @@ export async function feedUntilComplete(options: FeedUntilCompleteOptions): Prom
   for (let fruitless = 0; fruitless < FRUITLESS_WALKS;) {
     const jobs = await feed(options);
     if (jobs === 0 || signal.aborted) return;
-    await drainedTo(queue, 0, signal, settledOrQuiet(options));
+    const ended = await drainedTo(queue, 0, signal, settledOrQuiet(options));
     if (signal.aborted) return;
     const after = await look();
     if (after.storedCells >= grid.cells) return;
-    fruitless = settled(after) > settled(before) ? 0 : fruitless + 1;
+    if (ended) fruitless = settled(after) > settled(before) ? 0 : fruitless + 1;
     before = after;
   }
   throw (
@@ -50,7 +54,7 @@ const settled = (progress: SweepProgress): number => progress.storedPoints + pro
  * Whether waiting for an empty queue can end early: everything seems settled, or nothing has happened for long. A failed point may
  * have some of its cells, so the count is a hint and the next walk decides.
  */
-function settledOrQuiet({ grid, latest }: FeedUntilCompleteOptions): () => boolean {
+function settledOrQuiet({ grid, latest, patienceMs = PATIENCE_MS }: FeedUntilCompleteOptions): () => boolean {
   let seen = -1;
   let since = performance.now();
   return () => {
@@ -61,6 +65,6 @@ function settledOrQuiet({ grid, latest }: FeedUntilCompleteOptions): () => boole
       since = performance.now();
     }
     const accounted = progress.storedCells + progress.failedPoints * grid.questions.length;
-    return accounted >= grid.cells || performance.now() - since > PATIENCE_MS;
+    return accounted >= grid.cells || performance.now() - since > patienceMs;
   };
 }

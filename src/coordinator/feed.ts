@@ -98,10 +98,11 @@ async function handOut(jobs: readonly Job[], queue: JobQueue, window: number, si
   return added;
 }
 
-/** Waits until the queue holds at most `depth` jobs, `until` says so, or the signal is aborted. */
-export async function drainedTo(queue: JobQueue, depth: number, signal: AbortSignal, until?: () => boolean): Promise<void> {
+/** Waits until the queue holds at most `depth` jobs, then true; false where `until` or the signal ended the waiting. */
+export async function drainedTo(queue: JobQueue, depth: number, signal: AbortSignal, until?: () => boolean): Promise<boolean> {
   while (!signal.aborted && until?.() !== true) {
-    if ((await withRetry(() => queue.depth(), { signal })) <= depth) return;
+    if ((await withRetry(() => queue.depth(), { signal })) <= depth) return true;
     await pause(LOOK_MS, signal);
   }
+  return false;
 }

@@ -93,6 +93,7 @@ export async function runSweep(run: SweepRun): Promise<SweepSummary> {
         queue,
         window: run.window ?? (pool === null ? 64 : 8 * pool.threads),
         jobPoints: run.jobPoints,
+        patienceMs: run.patienceMs,
         signal: halted.signal,
         onReused: reused.count,
         latest: () => tracker.latest(),

@@ -27,6 +27,8 @@ export interface SweepRun {
   readonly jobPoints?: number;
   /** jobs kept waiting and running; default 8 for each thread, 64 without a pool */
   readonly window?: number;
+  /** milliseconds without a new row after which lost jobs are looked for; default five minutes */
+  readonly patienceMs?: number;
 }
 
 export interface SweepStatus {

@@ -247,6 +247,15 @@ describe('running a sweep', () => {
       expect(summary).toMatchObject({ outcome: 'done', computed: 160, reused: 0 });
     });
 
+    it('has patience with points that take long', async () => {
+      const looks: number[] = [];
+      const watched = overriding(store, { enrol: (sweep, points) => (looks.push(points.length), store.enrol(sweep, points)) });
+      // The first point ends only when the store has been compared several times without anything new.
+      const slow = inlinePool(() => waitFor(() => looks.length > 5, 'further walks'));
+      const run = runOf(doubleWell('slow', { couplings: 1 }), { store: watched, pool: slow, patienceMs: 30 });
+      expect(await runSweep(run)).toMatchObject({ outcome: 'done', computed: 8 });
+    });
+
     it('gives up on a queue that loses everything', async () => {
       const losing = overriding(openQueue(), { add: () => Promise.resolve() });
       await expect(runSweep(runOf(doubleWell('void'), { queue: losing }))).rejects.toMatchObject({ code: 'queue.incomplete' });
