@@ -59,7 +59,7 @@ function bracketOf(a: Usable, b: Usable, estimate: number, candidates: number, w
 }
 
 function pairs(points: readonly Usable[]): [Usable, Usable][] {
-  return points.slice(1).map((point, index) => [points[index] as Usable, point]);
+  return points.slice(1).map((point, index) => [points[index], point]);
 }
 
 function crossing(points: readonly Usable[], level: number): Finding {
@@ -94,11 +94,11 @@ function steepest(points: readonly Usable[], logarithmic: boolean): Finding {
   }));
   const scale = Math.max(...points.map(({ y }) => Math.abs(y)));
   const change = Math.max(...points.map(({ y }) => y)) - Math.min(...points.map(({ y }) => y));
-  if (change <= FLAT * scale) return nothing('no change', `constant at ${show((points[0] as Usable).y)}`);
+  if (change <= FLAT * scale) return nothing('no change', `constant at ${show(points[0].y)}`);
   const greatest = Math.max(...steps.map(({ slope }) => slope));
   const best = steps.findIndex(({ slope }) => slope === greatest);
   const candidates = steps.filter(({ slope }) => slope >= greatest * (1 - FLAT)).length;
-  const step = steps[best] as (typeof steps)[number];
+  const step = steps[best];
   const [before, after] = [steps[best - 1], steps[best + 1]];
   const verb = step.b.y < step.a.y ? 'falls' : 'rises';
   if (!before || !after)

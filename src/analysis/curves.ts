@@ -102,9 +102,7 @@ export function curvesOf(samples: readonly Sample[], along: string, average: rea
         question: first.question,
         resolution: group.find(({ resolution }) => resolution !== null)?.resolution ?? null,
         at: otherAxes(first.coordinates, inner),
-        points: [...points.values()]
-          .map((list) => averaged((list[0] as Sample).coordinates[along] as number | string, list))
-          .sort((a, b) => ascending(a.x, b.x)),
+        points: [...points.values()].map((list) => averaged(list[0].coordinates[along], list)).sort((a, b) => ascending(a.x, b.x)),
       };
     })
     .sort((a, b) => a.questionOrdinal - b.questionOrdinal);

@@ -36,7 +36,7 @@ function distinct(values: Iterable<number | string>): (number | string)[] {
 function mapOf(curves: readonly Curve[], axes: MapAxes): PhaseMap {
   const [first] = curves as readonly [Curve, ...Curve[]];
   const xs = distinct([...(axes.xValues ?? []), ...curves.flatMap(({ points }) => points.map(({ x }) => x))]);
-  const rows = new Map(curves.map((curve) => [curve.at[axes.y] as number | string, curve]));
+  const rows = new Map(curves.map((curve) => [curve.at[axes.y], curve]));
   const ys = distinct([...(axes.yValues ?? []), ...rows.keys()]);
   return {
     questionOrdinal: first.questionOrdinal,
@@ -83,6 +83,6 @@ export function boundariesOn(map: PhaseMap, boundaries: readonly Boundary[]): Ma
       .filter(({ questionOrdinal, at }) => {
         return questionOrdinal === map.questionOrdinal && JSON.stringify(otherAxes(at, [map.y.axis])) === panel;
       })
-      .map((boundary) => [boundary.at[map.y.axis] as number | string, boundary]),
+      .map((boundary) => [boundary.at[map.y.axis], boundary]),
   );
 }

@@ -12,7 +12,7 @@ function regular(steps: readonly number[]): boolean {
 /** 'log' when ratios of ascending positive neighbours are constant and differences are not; 'linear' otherwise. */
 export function spacingOf(values: readonly number[]): 'linear' | 'log' {
   if (values.length < 3 || values.some((value) => value <= 0)) return 'linear';
-  const differences = values.slice(1).map((value, index) => value - (values[index] as number));
-  const ratios = values.slice(1).map((value, index) => Math.log(value / (values[index] as number)));
+  const differences = values.slice(1).map((value, index) => value - values[index]);
+  const ratios = values.slice(1).map((value, index) => Math.log(value / values[index]));
   return !regular(differences) && regular(ratios) ? 'log' : 'linear';
 }

@@ -51,7 +51,10 @@ function bar(): ProgressView {
       else view.update(status.storedCells, payload);
       started = true;
     },
-    close: () => view.stop(),
+    close() {
+      if (started) view.stop();
+      started = false;
+    },
   };
 }
 

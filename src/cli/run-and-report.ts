@@ -36,6 +36,11 @@ export async function runWith(
 ): Promise<SweepSummary> {
   const workers = await openWorkers(context);
   const progress = progressView(context);
+  // Also when the process is to end at once: a bar hides the cursor.
+  context.closers.push(() => {
+    progress.close();
+    return Promise.resolve();
+  });
   return run({
     store,
     ...workers,

@@ -16,6 +16,7 @@ import {
   INK,
   keepTogether,
   layoutAxis,
+  panelHeading,
   positionAxis,
   positionScale,
   textWidth,
@@ -82,7 +83,7 @@ function panelsOf(curves: readonly Curve[]): Panel[] {
 }
 
 function lineData({ lines }: Panel, panel: number, layout: AxisLayout): Data[] {
-  const place = new Map(layout.values.map((value, index) => [value, layout.positions[index] as number]));
+  const place = new Map(layout.values.map((value, index) => [value, layout.positions[index]]));
   const values = lines.flatMap(({ label, curve }) =>
     curve.points.map(({ x, value, error, state }) => ({
       label,
@@ -140,7 +141,7 @@ function curveMarks(panel: number): Mark[] {
 function panelMark(figure: CutFigure, panels: readonly Panel[], panel: number, columns: number, layout: AxisLayout): GroupMark {
   const column = panel % columns;
   const lowest = panel + columns >= panels.length;
-  const head = (panels[panel] as Panel).head;
+  const head = panels[panel].head;
   return {
     type: 'group',
     encode: {
@@ -157,7 +158,7 @@ function panelMark(figure: CutFigure, panels: readonly Panel[], panel: number, c
       { name: 'height', value: PANEL.height },
     ],
     scales: [positionScale('x', layout)],
-    title: { text: [...head], anchor: 'start', frame: 'group', offset: 6 },
+    title: panelHeading(head),
     axes: [
       positionAxis('x', layout, lowest ? figure.labels.axisTitle(figure.along) : null),
       {
@@ -209,7 +210,7 @@ export function cutFigureSpec(figure: CutFigure): Spec {
     ...figure.notes,
     ...unitSentences(labels),
   ];
-  const caption = wrapText(sentences.join(' '), captionWidth, CAPTION_SIZE);
+  const caption = wrapText(keepTogether(sentences.join(' ')), captionWidth, CAPTION_SIZE);
   const lineHeight = CAPTION_SIZE * 1.4;
   const heads = Math.max(...panels.map(({ head }) => head.length), 1);
   return {

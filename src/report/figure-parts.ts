@@ -1,5 +1,5 @@
 /** Parts that every figure shares: axes laid out from grid values, text wrapping, fonts and colours. Pure; runs in a browser as well. */
-import type { Axis, Mark, Scale } from 'vega';
+import type { Axis, Mark, Scale, Title } from 'vega';
 import { spacingOf } from '../analysis/spacing.js';
 import { formatNumber } from './format.js';
 
@@ -50,16 +50,16 @@ export interface AxisLayout {
 
 export function layoutAxis(values: readonly (number | string)[]): AxisLayout {
   const numeric = values.every((value) => typeof value === 'number');
-  const positions = numeric ? (values as readonly number[]) : values.map((_, index) => index);
+  const positions = numeric ? values : values.map((_, index) => index);
   const scale = numeric ? spacingOf(positions) : 'band';
   const to = (x: number): number => (scale === 'log' ? Math.log(x) : x);
   const from = (x: number): number => (scale === 'log' ? Math.exp(x) : x);
   const at = positions.map(to);
   const first = at[0] ?? 0;
   const last = at.at(-1) ?? 0;
-  const firstHalf = at.length > 1 ? ((at[1] as number) - first) / 2 : 0.5;
+  const firstHalf = at.length > 1 ? (at[1] - first) / 2 : 0.5;
   const lastHalf = at.length > 1 ? (last - (at.at(-2) as number)) / 2 : 0.5;
-  const inner = at.slice(1).map((x, index) => (x + (at[index] as number)) / 2);
+  const inner = at.slice(1).map((x, index) => (x + at[index]) / 2);
   return { scale, values, positions, edges: [first - firstHalf, ...inner, last + lastHalf].map(from) };
 }
 
@@ -75,7 +75,7 @@ export function positionScale(name: 'x' | 'y', layout: AxisLayout, domain: reado
 }
 
 function ends({ edges }: AxisLayout): [number, number] {
-  return [edges[0] as number, edges.at(-1) as number];
+  return [edges[0], edges.at(-1) as number];
 }
 
 /** Ticks on the values themselves while there are few, so that no tick names a size that is not in the grid. */
@@ -95,7 +95,12 @@ export function positionAxis(name: 'x' | 'y', layout: AxisLayout, title: string 
 const ADVANCE = 0.56;
 
 export function textWidth(text: string, fontSize: number): number {
-  return [...text].length * ADVANCE * fontSize;
+  return Array.from(text).length * ADVANCE * fontSize;
+}
+
+/** Lines over a panel, flush with its left edge. */
+export function panelHeading(lines: readonly string[]): Title {
+  return { text: [...lines], anchor: 'start', frame: 'group', offset: 6 };
 }
 
 /** Room to the left of a y axis: its tick labels and its title. */
@@ -122,9 +127,9 @@ export function captionMark(lines: readonly string[], top: number, fontSize: num
   };
 }
 
-/** Binds a number to the word before it, so that a line never breaks between a parameter and its value. */
+/** Binds a number to the word or sign before it, so that a line never breaks between a parameter and its value. */
 export function keepTogether(text: string): string {
-  return text.replace(/ (?=-?[\d.[])/g, '\u00a0');
+  return text.replaceAll(' = ', '\u00a0=\u00a0').replace(/ (?=-?[\d.[])/g, '\u00a0');
 }
 
 /** Lines of at most `width` pixels, broken at spaces. */

@@ -33,7 +33,7 @@ export const RECORD_KEYS: readonly string[] = [
 ];
 
 function fieldValues(source: object | null, names: readonly { readonly name: string }[]): [string, Json][] {
-  return names.map(({ name }) => [name, ((source as Record<string, Json> | null)?.[name] ?? null) as Json]);
+  return names.map(({ name }) => [name, (source as Record<string, Json> | null)?.[name] ?? null]);
 }
 
 /** @param sweep name of the sweep, null for a point computed by itself */
@@ -48,10 +48,10 @@ export function flatRecord(row: CellRow, sweep: string | null): FlatRecord {
     coupling: spec.coupling,
     parameters: spec.parameters,
     disorder: spec.disorder as Json,
-    prepared: spec.prepared as Json,
-    detected: spec.detected as Json,
+    prepared: spec.prepared,
+    detected: spec.detected,
     coordinates: row.coordinates,
-    schedule: question.schedule as Json,
+    schedule: question.schedule,
     resolution: question.resolution,
     budget: question.budget,
     efficiency: question.detector.efficiency,

@@ -19,6 +19,7 @@ import {
   INK,
   keepTogether,
   layoutAxis,
+  panelHeading,
   positionAxis,
   positionScale,
   wrapText,
@@ -223,7 +224,7 @@ function panelMark(figure: PhaseDiagram, map: PhaseMap, panel: number, columns: 
       { name: 'height', value: PANEL.height },
     ],
     scales: [positionScale('x', layouts.x), positionScale('y', layouts.y)],
-    title: { text: [...panelHead(figure, map, panel)], anchor: 'start', frame: 'group', offset: 6 },
+    title: panelHeading(panelHead(figure, map, panel)),
     axes: [
       positionAxis('x', layouts.x, lowest ? figure.labels.axisTitle(map.x.axis) : null),
       positionAxis('y', layouts.y, column === 0 ? figure.labels.axisTitle(map.y.axis) : null),
@@ -251,7 +252,7 @@ export function phaseDiagramSpec(figure: PhaseDiagram): Spec {
   const width = columns * PANEL.width + (columns - 1) * PANEL.gapX;
   const height = rows * PANEL.height + (rows - 1) * PANEL.gapY;
   const layouts = maps.map((map) => ({ x: layoutAxis(map.x.values), y: layoutAxis(map.y.values) }));
-  const drawn = maps.some((map, panel) => boundaryData(map, figure.boundaries, layouts[panel] as Layouts).length > 0);
+  const drawn = maps.some((map, panel) => boundaryData(map, figure.boundaries, layouts[panel]).length > 0);
   const [low, high] = valueRange(maps) ?? [0, 1];
   const logarithmic = low > 0 && high / low > 1e3;
   const heads = Math.max(...maps.map((map, panel) => panelHead(figure, map, panel).length), 1);
@@ -264,7 +265,7 @@ export function phaseDiagramSpec(figure: PhaseDiagram): Spec {
     ...figure.notes,
     ...unitSentences(labels),
   ];
-  const caption = wrapText(sentences.join(' '), width + COLOUR_BAR, CAPTION_SIZE);
+  const caption = wrapText(keepTogether(sentences.join(' ')), width + COLOUR_BAR, CAPTION_SIZE);
   const lineHeight = CAPTION_SIZE * 1.4;
   return {
     $schema: 'https://vega.github.io/schema/vega/v6.json',

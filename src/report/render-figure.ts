@@ -49,8 +49,8 @@ export async function writeFigure(spec: Spec, folder: string, name: string): Pro
   const paths = [join(folder, `${name}.svg`), join(folder, `${name}.png`)];
   try {
     await mkdir(folder, { recursive: true });
-    await writeFile(paths[0] as string, svg);
-    await writeFile(paths[1] as string, renderPng(svg));
+    await writeFile(paths[0], svg);
+    await writeFile(paths[1], renderPng(svg));
   } catch (cause) {
     throw new WindrowError('report.unwritable', 'a figure cannot be written', {
       where: folder,

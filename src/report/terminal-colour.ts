@@ -22,7 +22,7 @@ function channels(colour: string): Channels {
 /** The nearest colour of the 6 × 6 × 6 cube that 256-colour terminals have at 16 to 231. */
 function cubeIndex(colour: Channels): number {
   const [red, green, blue] = colour.map((value) => (value < 48 ? 0 : value < 115 ? 1 : Math.floor((value - 35) / 40)));
-  return 16 + 36 * (red as number) + 6 * (green as number) + (blue as number);
+  return 16 + 36 * red + 6 * green + blue;
 }
 
 /** A painter over any palette that maps a share between 0 and 1 to `rgb(r, g, b)`. */
@@ -41,5 +41,5 @@ export function painter(palette: (share: number) => string): Paint {
 /** The perceptually uniform palette that the figures use. The plotting library is loaded here, not by every command that starts. */
 export async function figurePainter(): Promise<Paint> {
   const { scheme } = await import('vega');
-  return painter(scheme('viridis') as unknown as (share: number) => string);
+  return painter(scheme('viridis') as (share: number) => string);
 }

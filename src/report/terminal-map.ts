@@ -57,7 +57,7 @@ function shownColumns(count: number, room: number): { readonly step: number; rea
 
 /** The column left of the boundary, so that it lies in this one or between this and the next. */
 function boundaryColumn(map: PhaseMap, row: number, columns: readonly number[], found: ReadonlyMap<number | string, Boundary>): number {
-  const bracket = found.get(map.y.values[row] as number | string)?.bracket;
+  const bracket = found.get(map.y.values[row])?.bracket;
   if (!bracket) return -1;
   return columns.findLastIndex((column) => (map.x.values[column] as number) <= bracket.low);
 }
@@ -108,8 +108,8 @@ export function renderTerminalMap(map: PhaseMap, options: TerminalMapOptions): s
   const frame = options.colour === 'none' ? '|' : '▏';
   const rows = map.cells.map((row, index) => {
     const mark = boundaryColumn(map, index, columns, found);
-    const text = columns.map((column, place) => cellText(row[column] as CurvePoint, place === mark, cell, range, options)).join('');
-    return `${(names[index] as string).padStart(gutter)} ${frame}${text}`;
+    const text = columns.map((column, place) => cellText(row[column], place === mark, cell, range, options)).join('');
+    return `${names[index].padStart(gutter)} ${frame}${text}`;
   });
   const states = new Set(map.cells.flatMap((row) => row.map(({ state }) => state)));
   const legend = [
@@ -124,7 +124,7 @@ export function renderTerminalMap(map: PhaseMap, options: TerminalMapOptions): s
   return [
     options.title,
     ...(options.subtitle === '' ? [] : [options.subtitle]),
-    `${options.yTitle}`,
+    options.yTitle,
     ...rows.reverse(),
     indent + tickLine(map, columns, cell),
     indent + options.xTitle,

@@ -39,14 +39,14 @@ describe('the level rule', () => {
     });
     fc.assert(
       fc.property(input, ({ xs, position, width, falling, doubtful }) => {
-        const [low, high] = [xs[0] as number, xs.at(-1) as number];
+        const [low, high] = [xs[0], xs.at(-1) as number];
         const crossing = low + position * (high - low);
         const sign = falling ? -1 : 1;
         // atan crosses 0 at `crossing` only, and is strictly monotone in floating point wherever arguments differ enough.
         const points = xs.map((x, index) => ({
           x,
           value: sign * Math.atan((x - crossing) / width),
-          doubtful: doubtful[index] === true && index > 0 && index < xs.length - 1,
+          doubtful: doubtful[index] && index > 0 && index < xs.length - 1,
         }));
         const found = boundaryOf(curve(points), { kind: 'level', level: 0 });
         const [first, last] = [points[0]?.value ?? 0, points.at(-1)?.value ?? 0];
@@ -72,7 +72,7 @@ describe('the level rule', () => {
   it('finds the crossing of a straight line to rounding', () => {
     fc.assert(
       fc.property(grid, fc.double({ ...finite, min: 0.01, max: 0.99 }), (xs, position) => {
-        const [low, high] = [xs[0] as number, xs.at(-1) as number];
+        const [low, high] = [xs[0], xs.at(-1) as number];
         fc.pre(high - low > 1e-6);
         const crossing = low + position * (high - low);
         const found = boundaryOf(curve(xs.map((x) => ({ x, value: 3 * (x - crossing) }))), { kind: 'level', level: 0 });
@@ -92,7 +92,7 @@ describe('the steepest rule', () => {
         let x = 0;
         const points = list.map(({ step, value }) => ({ x: (x += step) / 100, value }));
         const slopes = points.slice(1).map((point, index) => {
-          const before = points[index] as (typeof points)[number];
+          const before = points[index];
           return Math.abs((point.value - before.value) / (point.x - before.x));
         });
         // A grid of constant ratios is searched on the logarithmic scale, where other pairs may be steeper.

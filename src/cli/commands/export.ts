@@ -3,7 +3,8 @@ import { createWriteStream } from 'node:fs';
 import type { Writable } from 'node:stream';
 import type { Command } from 'commander';
 import { WindrowError } from '../../core/errors.js';
-import { writeCsv, writeJsonLines } from '../../report/export.js';
+import type { Json } from '../../core/json.js';
+import { csvText, writeCsv, writeJsonLines } from '../../report/export.js';
 import { type FlatRecord, flatRecord, RECORD_KEYS } from '../../report/flat-record.js';
 import { formatNumber } from '../../report/format.js';
 import { renderTable } from '../../report/table.js';
@@ -37,10 +38,9 @@ const SHOWN = [
   'flags',
 ] as const;
 
-function shown(value: unknown): string {
+function shown(value: Json | undefined): string {
   if (typeof value === 'number') return formatNumber(value, 6);
-  if (Array.isArray(value)) return value.join(' ');
-  return value === null ? '–' : String(value);
+  return Array.isArray(value) ? value.join(' ') : csvText(value) || '–';
 }
 
 async function write(format: Format, all: AsyncIterable<FlatRecord>, out: Writable): Promise<void> {

@@ -116,8 +116,8 @@ function rowsOf(grid: Grid, memory: number): CellRow[] {
   });
 }
 
-function shown(value: unknown): string {
-  return typeof value === 'number' ? formatNumber(value, 12) : value === null || value === undefined ? '–' : String(value);
+function shown(value: number | string | readonly string[] | null | undefined): string {
+  return typeof value === 'number' ? formatNumber(value, 12) : value === null || value === undefined ? '–' : value.toString();
 }
 
 function pointText(rows: readonly CellRow[]): string {

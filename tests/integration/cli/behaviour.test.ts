@@ -144,7 +144,7 @@ describe('a reader that goes away', () => {
     const env = { ...process.env, ...ENVIRONMENT, WINDROW_STORE: place.store };
     const { stdout, stderr } = spawnSync('bash', ['-c', command], { env, encoding: 'utf8' });
     const [line, status] = stdout.trimEnd().split('\n');
-    expect(JSON.parse(line as string)).toMatchObject({ sweep: 'junction' });
+    expect(JSON.parse(line)).toMatchObject({ sweep: 'junction' });
     expect({ status, stderr }).toEqual({ status: 'status 0', stderr: '' });
   });
 

@@ -91,8 +91,8 @@ describe('export', () => {
     expect({ status, out }).toEqual({ status: 0, out: '' });
     expect(err).toContain(path);
     const [header, ...lines] = readFileSync(path, 'utf8').trimEnd().split('\n');
-    const columns = (header as string).split(',');
-    expect(columns).toEqual(Object.keys(cells[0] as Record_));
+    const columns = header.split(',');
+    expect(columns).toEqual(Object.keys(cells[0]));
     expect(lines).toHaveLength(cells.length);
     // Fields before the first quoted one can be split at commas.
     lines.forEach((line, index) => {

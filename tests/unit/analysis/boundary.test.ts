@@ -44,7 +44,7 @@ describe('a stated level', () => {
   it('gives the greatest change of several crossings and their number', () => {
     const values = [0, 0.6, 0.4, 1, 1];
     const found = boundary(
-      rowsOf([1, 2, 3, 4, 5], (x) => values[x - 1] as number),
+      rowsOf([1, 2, 3, 4, 5], (x) => values[x - 1]),
       'recurrent_weight',
       { kind: 'level', level: 0.5 },
     );

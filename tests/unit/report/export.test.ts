@@ -21,7 +21,7 @@ function readCsv(text: string): string[][] {
   let field = '';
   let quoted = false;
   for (let at = 0; at < text.length; at++) {
-    const char = text[at] as string;
+    const char = text[at];
     if (quoted) {
       if (char === '"' && text[at + 1] === '"') {
         field += '"';
@@ -67,12 +67,12 @@ describe('CSV', () => {
     const [header, ...lines] = readCsv(text) as [string[], ...string[][]];
     expect(header).toEqual(RECORD_KEYS);
     expect(lines).toHaveLength(3);
-    const first = Object.fromEntries(header.map((key, column) => [key, lines[0]?.[column] as string]));
+    const first = Object.fromEntries(header.map((key, column) => [key, lines[0]?.[column]]));
     expect(Number(first['coupling'])).toBe(0.1 + 0.2);
     expect(Number(first['recurrent_weight'])).toBe(1e-300);
     expect(Number(first['mean_time'])).toBe(1 / 3);
     expect(first['sweep']).toBe('a, "quoted" sweep');
-    expect(JSON.parse(first['schedule'] as string)).toEqual({ family: 'fixed', interval: 0.3 });
+    expect(JSON.parse(first['schedule'])).toEqual({ family: 'fixed', interval: 0.3 });
     expect(lines[2]?.[header.indexOf('winding_number')]).toBe('');
   });
 

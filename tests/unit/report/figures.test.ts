@@ -52,7 +52,7 @@ function diagram(rows: readonly CellRow[], panels?: number) {
 /** Text contents of an SVG, entities resolved. */
 function textsOf(svg: string): string[] {
   return [...svg.matchAll(/<(?:text|tspan)[^>]*>([^<]+)</g)].map(([, text]) =>
-    (text as string).replaceAll('&lt;', '<').replaceAll('&gt;', '>').replaceAll('&amp;', '&'),
+    text.replaceAll('&lt;', '<').replaceAll('&gt;', '>').replaceAll('&amp;', '&'),
   );
 }
 
@@ -62,7 +62,7 @@ function expectWellFormed(svg: string): void {
   for (const [, close, name, self] of svg.matchAll(/<(\/?)([a-zA-Z]+)[^>]*?(\/?)>/g)) {
     if (self === '/') continue;
     if (close === '/') expect(open.pop()).toBe(name);
-    else open.push(name as string);
+    else open.push(name);
   }
   expect(open).toEqual([]);
 }
@@ -185,7 +185,7 @@ describe('files', () => {
     const spec = diagram(syntheticRows(sizes, couplings), 1);
     const paths = await writeFigure(spec, join(folder, 'new', 'figures'), 'map');
     expect(paths.map((path) => path.slice(folder.length))).toEqual(['/new/figures/map.svg', '/new/figures/map.png']);
-    const [svg, png] = [await readFile(paths[0] as string, 'utf8'), await readFile(paths[1] as string)];
+    const [svg, png] = [await readFile(paths[0], 'utf8'), await readFile(paths[1])];
     // Signature and header chunk of Portable Network Graphics, ISO/IEC 15948:2004.
     expect([...png.subarray(0, 8)]).toEqual([137, 80, 78, 71, 13, 10, 26, 10]);
     expect(png.subarray(12, 16).toString('latin1')).toBe('IHDR');

@@ -32,7 +32,7 @@ const base: TerminalMapOptions = {
 };
 
 function mapOf(list: readonly CellRow[]): PhaseMap {
-  return phaseMapsOf(samplesOf(list, findQuantity('winding_number')), { x: 'coupling', y: 'size' })[0] as PhaseMap;
+  return phaseMapsOf(samplesOf(list, findQuantity('winding_number')), { x: 'coupling', y: 'size' })[0];
 }
 
 describe('the terminal map', () => {
