@@ -7,7 +7,18 @@ import type { SpectralKernel, Tridiagonalisation } from '../../src/linalg/kernel
 import type { HermitianMatrix, StateVector } from '../../src/linalg/matrix.js';
 import { normBound } from '../../src/linalg/norm.js';
 import { levelsOf, referenceMeasure } from '../support/exact-spectrum.js';
-import { basisState, blockadeChain, dimer, randomDense, randomState, ring, sparseChain, times, tridiagonal } from '../support/matrices.js';
+import {
+  basisState,
+  blockadeChain,
+  dimer,
+  randomDense,
+  randomSparse,
+  randomState,
+  ring,
+  sparseChain,
+  times,
+  tridiagonal,
+} from '../support/matrices.js';
 
 const SAFETY = 8;
 const energyTolerance = (matrix: HermitianMatrix): number => SAFETY * matrix.dimension * Number.EPSILON * normBound(matrix);
@@ -117,6 +128,34 @@ export function spectralKernelSuite(name: string, kernel: SpectralKernel): void 
           expectMeasure(matrix, phi, psi, kernel.lanczos(matrix, phi, psi, n));
         }
       }
+    });
+
+    it('agrees with a full diagonalisation by ml-matrix on sparse storage, with real and complex states', () => {
+      for (const n of [1, 2, 3, 4, 5, 30, 101]) {
+        for (const [b, c] of [
+          [false, false],
+          [false, true],
+          [true, true],
+        ]) {
+          const matrix = randomSparse(n, 40 + n);
+          const [phi, psi] = [randomState(n, b, 1), randomState(n, c, 2)];
+          expectMeasure(matrix, phi, psi, kernel.lanczos(matrix, phi, psi, n));
+        }
+      }
+    });
+
+    it('keeps levels and weights where plain iteration would find levels again and again', () => {
+      // A far level converges long before n steps and draws every later vector towards itself.
+      const onsite = Array.from({ length: 300 }, (_, x) => (x === 150 ? 40 : Math.cos(0.7 * x * x)));
+      const matrix = sparseChain(onsite, 1.3);
+      const phi = randomState(300, false, 7);
+      const few = solve(kernel.lanczos(matrix, phi, null, 300));
+      const all = solve(kernel.householder(matrix, phi, null));
+      expect(few.energies.length).toBe(300);
+      all.energies.forEach((energy, k) => {
+        expect(Math.abs(few.energies[k] - energy)).toBeLessThan(energyTolerance(matrix));
+        expect(Math.abs(few.weights[k] - all.weights[k])).toBeLessThan(1e-11);
+      });
     });
 
     it('says when it was stopped early, and not when it was done', () => {

@@ -35,6 +35,19 @@ export function randomDense(dimension: number, complex: boolean, seed: number): 
   return { kind: 'dense', dimension: n, re, im };
 }
 
+/** About four normal elements a row. */
+export function randomSparse(dimension: number, seed: number): SparseMatrix {
+  const stream = randomStream(seed, 'sparse');
+  const builder = new SparseBuilder(dimension);
+  for (let i = 0; i < dimension; i += 1) {
+    builder.add(i, i, stream.normal());
+    if (i > 0) builder.couple(i, i - 1, stream.normal());
+    const far = Math.floor(stream.uniform() * i);
+    if (far < i - 1) builder.couple(i, far, stream.normal());
+  }
+  return builder.build();
+}
+
 export function tridiagonal(diagonal: readonly number[], offDiagonal: readonly number[]): TridiagonalMatrix {
   return {
     kind: 'tridiagonal',

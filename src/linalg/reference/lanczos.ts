@@ -5,22 +5,18 @@
  * Research of the National Bureau of Standards 45, 255 (1950), 10.6028/jres.045.026 (from memory). One pass of reorthogonalisation is
  * repeated while it takes a sizeable part of the vector away, which makes the basis orthogonal to rounding (common practice: twice is enough).
  *
- * When to stop. The residual at the step where the Krylov space is exhausted is rounding *amplified* by the iteration, 1e-8‖H‖ as a rule,
- * so no threshold on it tells the dimension. Instead the Ritz pairs are asked, at steps in geometric progression: one whose residual is below
- * the merging distance is a level of H. When the pairs that are not yet so carry, all together, no more weight of φ than the least weight that counts
- * as bright, φ lies within a space that is invariant under H to rounding, and no level outside it can be bright. This also ends the
- * iteration early in localised regimes, where φ reaches few levels of many. An iteration that never gets there runs on to n.
+ * When to stop stands in krylov-convergence.ts. An iteration that never gets there runs on to n.
  */
 import { applyMatrix, isComplexPair } from '../apply.js';
 import type { Tridiagonalisation } from '../kernel.js';
+import { FIRST_CHECK, krylovConverged, nextCheck } from '../krylov-convergence.js';
 import type { HermitianMatrix, StateVector } from '../matrix.js';
 import { normBound, unitScale } from '../norm.js';
-import { BREAKDOWN, brightThreshold, mergingDistance } from '../precision.js';
+import { BREAKDOWN } from '../precision.js';
 import { innerProduct, squaredNorm, zeroVector } from '../vector.js';
 import { orthogonaliseComplex, orthogonaliseReal } from './orthogonalise.js';
 import { tridiagonalEigen } from './tridiagonal-ql.js';
 
-const FIRST_CHECK = 8;
 const MOST_PASSES = 5;
 
 /** See `SpectralKernel.lanczos`. */
@@ -42,7 +38,7 @@ export function lanczos(
   let q = scaled(start, 1 / Math.sqrt(squaredNorm(start)), complex);
   let previous: StateVector | null = null;
   let complete: boolean;
-  let nextCheck = FIRST_CHECK;
+  let check = FIRST_CHECK;
   for (let k = 0; ; k += 1) {
     basisRe.push(q.re);
     if (q.im !== null) basisIm.push(q.im);
@@ -63,10 +59,10 @@ export function lanczos(
       complete = true;
       break;
     }
-    if (k + 1 === nextCheck || k + 1 >= maximumSteps) {
-      complete = converged(alpha, beta, residual, n, norm * scale);
+    if (k + 1 === check || k + 1 >= maximumSteps) {
+      complete = krylovConverged(Float64Array.from(alpha), Float64Array.from(beta), residual, n, norm * scale, tridiagonalEigen);
       if (complete || k + 1 >= maximumSteps) break;
-      nextCheck = Math.ceil(1.2 * nextCheck) + 4;
+      check = nextCheck(check);
     }
     beta.push(residual);
     previous = q;
@@ -92,21 +88,6 @@ function orthogonalise(basisRe: readonly Float64Array[], basisIm: readonly Float
     before = after;
   }
   return before;
-}
-
-/** See the opening comment. All numbers at norm one; `norm` is the scaled norm bound. */
-function converged(alpha: readonly number[], beta: readonly number[], residual: number, n: number, norm: number): boolean {
-  const m = alpha.length;
-  const first = new Float64Array(m);
-  const last = new Float64Array(m);
-  first[0] = 1;
-  last[m - 1] = 1;
-  tridiagonalEigen(Float64Array.from(alpha), Float64Array.from(beta), [first, last]);
-  // The floor of the merging distance: at any n, the residual leaves a level where it is.
-  const tolerance = mergingDistance(n, norm);
-  let open = 0;
-  for (let k = 0; k < m; k += 1) if (residual * Math.abs(last[k]) > tolerance) open += first[k] * first[k];
-  return open <= brightThreshold(n);
 }
 
 function scaled(x: StateVector, factor: number, complex: boolean): StateVector {

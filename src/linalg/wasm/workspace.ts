@@ -32,13 +32,34 @@ export interface KernelFunctions {
     floor: number,
     most: number,
   ) => number;
+  readonly lanczosSteps: (
+    n: number,
+    rows: number,
+    columns: number,
+    values: number,
+    basis: number,
+    w: number,
+    alpha: number,
+    beta: number,
+    even: number,
+    odd: number,
+    state: number,
+    from: number,
+    to: number,
+    threshold: number,
+    breakdown: number,
+  ) => number;
+  readonly overlaps: (basis: number, count: number, n: number, x: number, out: number) => void;
   readonly averagedStep: (n: number, x: number, r: number, v: number, c: number, u: number, kappa: number, out: number) => void;
 }
 
 export interface Workspace {
   readonly kernels: KernelFunctions;
-  /** A view of doubles at an address, for as long as the workspace is lent. */
+  /** A view of doubles at an address, until the workspace is returned or grows. */
   view(address: number, length: number): Float64Array;
+  integers(address: number, length: number): Int32Array;
+  /** Grows to at least that many bytes from `FIRST_ADDRESS` on. */
+  reserve(bytes: number): void;
   /** Returns the memory; nothing of this workspace may be used after it. Twice is once. */
   release(): void;
 }
@@ -85,12 +106,17 @@ export function takeWorkspace(bytes: number): Workspace {
   if (module === null) throw new RangeError('WebAssembly kernels do not run here: allocation of their memory refused');
   const instance = idle.pop() ?? new WebAssembly.Instance(module);
   const { memory } = instance.exports;
-  const missing = Math.ceil((FIRST_ADDRESS + bytes - memory.buffer.byteLength) / PAGE);
-  if (missing > 0) memory.grow(missing);
+  const reserve = (needed: number): void => {
+    const missing = Math.ceil((FIRST_ADDRESS + needed - memory.buffer.byteLength) / PAGE);
+    if (missing > 0) memory.grow(missing);
+  };
+  reserve(bytes);
   let lent = true;
   return {
     kernels: instance.exports,
     view: (address, length) => new Float64Array(memory.buffer, address, length),
+    integers: (address, length) => new Int32Array(memory.buffer, address, length),
+    reserve,
     release() {
       if (lent && memory.buffer.byteLength <= KEPT) idle.push(instance);
       lent = false;

@@ -7,4 +7,5 @@
  */
 export { averagedStep } from './averaged';
 export { householderReal } from './householder-real';
+export { lanczosSteps, overlaps } from './lanczos';
 export { tridiagonalQl } from './tridiagonal-ql';
