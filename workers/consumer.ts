@@ -2,7 +2,7 @@
  * The queue consumer: a worker's life from its first job to its last.
  *
  * Guarantees: computes on the threads of the pool while this process's loop stays free to renew locks and to report; reports itself to
- * the registry every few seconds; when the signal is aborted it takes nothing new, finishes and stores what runs within the grace, and
+ * the registry every few seconds; drops the jobs of stopped sweeps; when the signal is aborted it takes nothing new, finishes and stores what runs within the grace, and
  * gives the rest back to the queue. Whatever happens to it, results that were stored stay, and jobs that were not are delivered again.
  */
 import { runDelivery } from '../src/coordinator/run-delivery.js';
@@ -44,8 +44,12 @@ export async function consumeJobs(run: ConsumerRun): Promise<ConsumerSummary> {
   const total = { jobs: 0, points: 0, cells: 0, failures: 0 };
   const running = new Set<Job>();
 
+  const stopping = stopWatch(store);
+
   const handle: Parameters<JobQueue['consume']>[0] = async (job, delivery) => {
     const begun = performance.now();
+    // What still waits of a sweep that was stopped is dropped; resuming finds it missing.
+    if (await stopping(job.sweep)) return;
     running.add(job);
     try {
       const report = await runDelivery(job, delivery, { store, queue, pool }, { memory: run.memoryFor(job), signal });
@@ -98,4 +102,23 @@ export async function consumeJobs(run: ConsumerRun): Promise<ConsumerSummary> {
 function aborted(signal: AbortSignal): Promise<void> {
   if (signal.aborted) return Promise.resolve();
   return new Promise((resolve) => signal.addEventListener('abort', () => resolve(), { once: true }));
+}
+
+/** Milliseconds that an answer about a sweep's state is good for. */
+const STATE_MS = 1_000;
+
+/** Asks the store, now and then, whether a sweep is to be stopped. A store that is away says nothing; the job will meet it anyway. */
+function stopWatch(store: ResultStore): (sweep: string) => Promise<boolean> {
+  const known = new Map<string, { readonly stopping: Promise<boolean>; readonly until: number }>();
+  return (sweep) => {
+    const now = performance.now();
+    const last = known.get(sweep);
+    if (last !== undefined && now < last.until) return last.stopping;
+    const stopping = store.findSweep(sweep).then(
+      (record) => record?.state === 'stopping',
+      () => false,
+    );
+    known.set(sweep, { stopping, until: now + STATE_MS });
+    return stopping;
+  };
 }

@@ -180,13 +180,18 @@ describe.skipIf(opened === null)('a cluster', { timeout: 180_000 }, () => {
   });
 
   it('stops a sweep when it is asked to, and resumes it', async () => {
-    const file = costlySweep('stopped', 1.2, 120);
+    const file = costlySweep('stopped', 1.2);
     const worker = cluster.worker();
     const sweep = cluster.sweep(file);
     await cluster.untilStored(file.name, 1);
+    // Held for the while that the command takes to start, for the sweep is short.
+    worker.kill('SIGSTOP');
     const stop = cluster.cli(['stop', file.name]);
     expect(await stop.end, stop.stderr()).toBe(0);
+    worker.kill('SIGCONT');
     expect(await sweep.end, sweep.stderr()).toBe(130);
+    await waitFor(async () => (await cluster.active()).length === 0, 'the worker to finish');
+    expect(await cluster.storedCells(file.name)).toBeLessThan(cellsOf());
     const resumed = cluster.cli(['resume', file.name]);
     expect(await resumed.end, resumed.stderr()).toBe(0);
     expect(worker.ended()).toBe(false);
