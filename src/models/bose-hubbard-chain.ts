@@ -1,24 +1,17 @@
 /** Bosons on a ring or a line of sites. */
 import { z } from 'zod';
+import { bosonHops, bosonNumber, bosonStates, particlesOf } from './bosons.js';
 import { binomial } from './combinatorics.js';
 import { totalRule } from './configuration-space.js';
 import { occupationLabels } from './labels.js';
 import { bonds, checkOnsite, geometryParameter, onsiteParameter, siteEnergies } from './lattice.js';
 import { defineProductFamily } from './product-family.js';
 import { refusal } from './refusal.js';
-import { basisState } from './states.js';
-import type { Term } from './states.js';
 import type { ProductBasis, SystemRequest } from './types.js';
-
-/** The most a configuration entry holds. */
-const MOST_PARTICLES = 65_535;
 
 const parameters = z.strictObject({
   J: z.number().default(1).describe('hopping amplitude between neighbours'),
-  particles: z
-    .union([z.literal('size'), z.int().min(1).max(MOST_PARTICLES)])
-    .default('size')
-    .describe('number of bosons; size: one boson a site on average'),
+  particles: bosonNumber,
   geometry: geometryParameter,
   onsite: onsiteParameter,
   tilt: z
@@ -28,15 +21,6 @@ const parameters = z.strictObject({
 });
 
 type Request = SystemRequest<z.infer<typeof parameters>>;
-
-const particlesOf = ({ size, parameters: { particles } }: Request): number => (particles === 'size' ? size : particles);
-
-/** The bosons shared equally among the chosen sites; null where they cannot be. */
-function shared(request: Request, chosen: (site: number) => boolean): readonly Term[] | null {
-  const sites = Array.from({ length: request.size }, (_, site) => chosen(site));
-  const each = particlesOf(request) / sites.filter(Boolean).length;
-  return Number.isInteger(each) ? basisState(sites.map((filled) => (filled ? each : 0))) : null;
-}
 
 function basis(request: Request): ProductBasis {
   const { size, coupling, disorder } = request;
@@ -51,21 +35,7 @@ function basis(request: Request): ProductBasis {
       for (let x = 0; x < size; x += 1) energy += n[x] * (energies[x] + (coupling * (n[x] - 1)) / 2);
       return energy;
     },
-    connect(n, emit) {
-      const hop = (from: number, to: number): void => {
-        if (n[from] === 0) return;
-        const amplitude = -J * Math.sqrt(n[from] * (n[to] + 1));
-        n[from] -= 1;
-        n[to] += 1;
-        emit(amplitude);
-        n[from] += 1;
-        n[to] -= 1;
-      };
-      for (const [x, y] of neighbours) {
-        hop(x, y);
-        hop(y, x);
-      }
-    },
+    connect: bosonHops(neighbours, new Float64Array(neighbours.length).fill(-J), particlesOf(request)),
   };
 }
 
@@ -96,28 +66,7 @@ export const boseHubbardChain = defineProductFamily<z.infer<typeof parameters>>(
   parameters,
   disordered: true,
   complete: (given, size) => ({ ...given, particles: given.particles === 'size' ? size : given.particles }),
-  states: [
-    {
-      name: 'unit-filling',
-      meaning: 'one boson on every site',
-      needs: 'as many bosons as sites',
-      terms: (request) => (particlesOf(request) === request.size ? shared(request, () => true) : null),
-    },
-    { name: 'all-left', meaning: 'all bosons on the first site', terms: (request) => shared(request, (site) => site === 0) },
-    { name: 'all-right', meaning: 'all bosons on the last site', terms: (request) => shared(request, (site) => site === request.size - 1) },
-    {
-      name: 'domain-wall',
-      meaning: 'the left half of the sites filled evenly, the right half empty',
-      needs: 'an even number of sites, and bosons that fill half of them evenly',
-      terms: (request) => (request.size % 2 === 0 ? shared(request, (site) => site < request.size / 2) : null),
-    },
-    {
-      name: 'density-wave',
-      meaning: 'sites 1, 3, 5, … filled evenly, the others empty',
-      needs: 'bosons that fill every other site evenly',
-      terms: (request) => shared(request, (site) => site % 2 === 0),
-    },
-  ],
+  states: bosonStates,
   checkParameters({ size, parameters: { onsite } }) {
     checkOnsite(onsite, size);
   },

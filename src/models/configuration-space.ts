@@ -54,6 +54,23 @@ export function totalRule(sites: number, levels: number, total: number): Configu
   };
 }
 
+/**
+ * Conserves the sum Q of the charges and the dipole moment P = Σ x q_x, on a ring of L sites P modulo L.
+ * @param charge q of a value
+ */
+export function dipoleRule(sites: number, levels: number, ring: boolean, charge: (value: number) => number): ConfigurationRule {
+  return {
+    sites,
+    levels,
+    start: [0, 0],
+    step([total, moment], value, site) {
+      const next = moment + site * charge(value);
+      return [total + charge(value), ring ? ((next % sites) + sites) % sites : next];
+    },
+    finish: (state) => state,
+  };
+}
+
 /** The conserved numbers of a configuration, null where the rule refuses it. */
 export function chargesOf(rule: ConfigurationRule, configuration: ArrayLike<number>): Tuple | null {
   let state: Tuple | null = rule.start;

@@ -57,6 +57,14 @@ export function occupationLabels({ sites, levels, total, unit }: OccupationOptio
   };
 }
 
+/**
+ * Labels of a chain of sites with a few local states each and no fixed total.
+ * @param symbols one character a local state, in the order of the values 0, 1, …
+ */
+export function localLabels(sites: number, symbols: string): LabelReader {
+  return { ...occupationLabels({ sites, levels: symbols.length, total: null, unit: 'quanta' }), symbols };
+}
+
 /** Labels [x] of one particle on sites x = 0 … sites − 1; an occupation list with a single 1 is read as well. */
 export function positionLabels(sites: number): LabelReader {
   return {

@@ -10,7 +10,7 @@
  */
 import { WindrowError } from '../core/errors.js';
 import { ConfigurationIndex } from './configuration-index.js';
-import type { Sector } from './family.js';
+import type { Sector } from './family-definition.js';
 import { RowStore } from './row-store.js';
 import type { Label } from './states.js';
 import type { Emit, ProductBasis } from './types.js';

@@ -7,10 +7,11 @@ import type { Json } from '../core/json.js';
 import { chargeKey, chargesOf, configurationSpace } from './configuration-space.js';
 import type { ConfigurationRule, NumberedSpace } from './configuration-space.js';
 import { defineFamily } from './family.js';
-import type { FamilyDefinition } from './family.js';
+import type { FamilyDefinition, NamedState } from './family-definition.js';
 import { exploreSector, measureSector } from './product-basis.js';
 import { refusal } from './refusal.js';
 import { remember } from './remember.js';
+import { MOST_TERMS } from './states.js';
 import type { Label, LabelReader } from './states.js';
 import type { Extent, ModelFamily, ProductBasis, SystemRequest } from './types.js';
 
@@ -36,6 +37,9 @@ export interface ProductDefinition<P> extends Omit<FamilyDefinition<P>, Made> {
 }
 
 const COUNTED = 2 ** 20;
+
+/** Extents of φ with at most this many basis states are remembered: neighbouring points of a sweep share their graph. */
+const FEW = 1000;
 
 /** Numberings and counts that are remembered; the numberings take up to 200 MB each. */
 const SPACES = 2;
@@ -63,8 +67,34 @@ export function defineProductFamily<P>(definition: ProductDefinition<P>): ModelF
   const space = (request: SystemRequest<P>, like: readonly Label[] | null): NumberedSpace => numbered(ask(request, like));
   const hilbertDimension = (request: SystemRequest<P>, support: () => readonly Label[]): number =>
     definition.hilbertDimension?.(request) ?? dimensionOf(ask(request, support()));
+  const uniform: NamedState<P> = {
+    name: 'uniform',
+    meaning: 'the equal superposition of all basis states',
+    needs: `at most ${MOST_TERMS} basis states`,
+    whole: true,
+    terms(request) {
+      const all = space(request, null);
+      return all.dimension > MOST_TERMS ? null : all.list().map((label) => ({ label, re: 1, im: 0 }));
+    },
+  };
+  const measured = remember(
+    DIMENSIONS,
+    ({ request, support }: { readonly request: SystemRequest<P>; readonly support: readonly Label[] }) =>
+      // The graph changes with an amplitude only where that vanishes; a random one is taken not to.
+      canonicalJson([
+        request.size,
+        request.coupling === 0,
+        request.disorder !== null,
+        request.parameters as Json,
+        support.map((label) => label.join()),
+      ]),
+    ({ request, support }) => ({ counted: measureSector(definition.basis(request), support, COUNTED) }),
+  );
+  const count = (request: SystemRequest<P>, support: readonly Label[]): ReturnType<typeof measureSector> =>
+    support.length <= FEW ? measured({ request, support }).counted : measureSector(definition.basis(request), support, COUNTED);
   return defineFamily<P>({
     ...definition,
+    states: [...definition.states, uniform],
     hilbertDimension,
     space,
     labels: (request) => allowedLabels(definition, request),
@@ -73,7 +103,7 @@ export function defineProductFamily<P>(definition: ProductDefinition<P>): ModelF
       const whole = hilbertDimension(request, support);
       const complex = definition.complex?.(request) ?? false;
       const bound = { dimension: whole, nonzeros: definition.nonzeros?.(request) ?? whole * (1 + definition.moves(request)) };
-      const counted = definition.fragmented === true ? measureSector(definition.basis(request), support(), COUNTED) : null;
+      const counted = definition.fragmented === true ? count(request, support()) : null;
       return { hilbertDimension: whole, ...(counted ?? bound), storage: 'sparse', complex };
     },
   });

@@ -7,7 +7,7 @@
 import { canonicalJson } from '../core/json.js';
 import type { Json } from '../core/json.js';
 import { groundState } from '../linalg/ground-state.js';
-import type { FamilyDefinition } from './family.js';
+import type { FamilyDefinition } from './family-definition.js';
 import { refusal } from './refusal.js';
 import { remember } from './remember.js';
 import type { QuenchForm } from './state-shape.js';

@@ -41,7 +41,8 @@ export interface LabelSpace {
 
 /** The states of one system: its labels, its named states, and what is built from them. */
 export interface StateSpace extends LabelReader {
-  readonly names: readonly string[];
+  /** Names that may mean a single basis state, in the order they are preferred. */
+  readonly basisNames: readonly string[];
   /** Terms of a named state, in any normalisation. @throws WindrowError state.unknown, state.invalid */
   named(name: string, where: string): readonly Term[];
   /** The labels that share the conserved numbers of those given; all labels for null. @throws WindrowError state.invalid */
@@ -98,7 +99,7 @@ function normalised(terms: readonly Term[], spec: unknown, where: string): reado
 }
 
 /** Basis states of a superposition that is written by listing them; 2^20 of them take about 200 MB. */
-const MOST_TERMS = 2 ** 20;
+export const MOST_TERMS = 2 ** 20;
 
 function readProduct(space: StateSpace, text: string, where: string): Label {
   const symbols = space.symbols ?? '0123456789';
@@ -165,7 +166,7 @@ export function resolveState(space: StateSpace, spec: unknown, where: string, de
 /** The first name that means this basis state. */
 function nameOf(space: StateSpace, label: Label, where: string): string | null {
   const key = keyOf(label);
-  for (const name of space.names) {
+  for (const name of space.basisNames) {
     let candidate: readonly Term[];
     try {
       candidate = space.named(name, where);

@@ -1,7 +1,7 @@
 /** One particle hopping on a ring or a line, with fluxes, on-site energies and disorder. */
 import { z } from 'zod';
 import { defineFamily } from './family.js';
-import type { Sector } from './family.js';
+import type { Sector } from './family-definition.js';
 import { positionLabels } from './labels.js';
 import { bonds, checkOnsite, geometryParameter, onsiteParameter, siteEnergies } from './lattice.js';
 import { exploreSector } from './product-basis.js';

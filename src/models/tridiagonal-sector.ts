@@ -1,5 +1,5 @@
 /** Tridiagonal Hamiltonians cut down to the runs that hold given basis states. A run ends where an off-diagonal element is exactly zero. */
-import type { Sector } from './family.js';
+import type { Sector } from './family-definition.js';
 
 /**
  * Keeps the runs of coupled states that contain the given rows, in their order; the blocks stay uncoupled.

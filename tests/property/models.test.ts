@@ -7,6 +7,7 @@ import { canonicalJson } from '../../src/core/json.js';
 import type { Json } from '../../src/core/json.js';
 import { modelFamilies } from '../../src/models/registry.js';
 import type { StateVector } from '../../src/linalg/matrix.js';
+import { describeParameters } from '../../src/models/parameters.js';
 import { checkRequest } from '../../src/models/request.js';
 import type { RawRequest } from '../../src/models/request.js';
 import type { ModelFamily } from '../../src/models/types.js';
@@ -77,25 +78,44 @@ const requests: Record<string, fc.Arbitrary<RawRequest>> = {
 
 const normOf = ({ re, im }: StateVector): number => Math.sqrt([...re, ...(im ?? [])].reduce((sum, x) => sum + x * x, 0));
 
-/** For families without their own requests: default parameters, small sizes, the named states that fit. */
-function namedRequests(family: ModelFamily): fc.Arbitrary<RawRequest> {
-  const { minimum, maximum } = family.size;
-  const candidates = [];
-  for (let size = minimum; size <= Math.min(minimum + 4, maximum); size += 1) {
-    for (const { name: prepared } of family.states) {
-      try {
-        checkRequest(family, { size, coupling: 1, prepared });
-        candidates.push({ size, prepared });
-      } catch (error) {
-        if (!(error instanceof WindrowError && error.code === 'state.invalid')) throw error;
-      }
-    }
+/** Any values of the parameters a family declares; those that are neither numbers nor words keep their default. */
+function anyParameters(family: ModelFamily): fc.Arbitrary<Record<string, unknown>> {
+  const values: Record<string, fc.Arbitrary<unknown>> = {};
+  for (const { name, allowed } of describeParameters(family)) {
+    if (/^a finite number(, or|$)/.test(allowed)) values[name] = energy;
+    else if (/^[a-z-]+( \| [a-z-]+)+$/.test(allowed)) values[name] = fc.constantFrom(...allowed.split(' | '));
   }
-  return fc.tuple(fc.constantFrom(...candidates), energy).map(([asked, coupling]) => ({ ...asked, coupling }));
+  return fc.record(values) as fc.Arbitrary<Record<string, unknown>>;
+}
+
+/** For families without their own requests: any parameters, small sizes, the named states that fit and drawn ones. */
+function anyRequests(family: ModelFamily): fc.Arbitrary<RawRequest> {
+  const { minimum, maximum } = family.size;
+  const states = fc.oneof(
+    fc.constantFrom<unknown>(...family.states.map(({ name }) => name)),
+    fc.nat().map((seed) => (family.productSpace === undefined ? family.states[0]?.name : { random: { seed } })),
+  );
+  const request = fc.record({
+    size: fc.integer({ min: minimum, max: Math.min(minimum + 2, maximum) }),
+    coupling: fc.oneof(fc.constant(0), energy),
+    parameters: anyParameters(family),
+    disorder: family.disordered ? disorder : fc.constant(null),
+    prepared: states,
+    detected: fc.oneof(fc.constant('same'), states),
+  });
+  return request.filter((raw) => {
+    try {
+      checkRequest(family, raw);
+      return true;
+    } catch (error) {
+      if (error instanceof WindrowError && error.code === 'state.invalid') return false;
+      throw error;
+    }
+  });
 }
 
 describe.each([...modelFamilies.values()].map((family) => [family.name, family] as const))('%s', (name, family) => {
-  const random = requests[name] ?? namedRequests(family);
+  const random = requests[name] ?? anyRequests(family);
 
   it('builds a Hermitian matrix in the promised form, within the promised extent, with a normalised φ', () => {
     fc.assert(
@@ -130,11 +150,12 @@ describe.each([...modelFamilies.values()].map((family) => [family.name, family] 
             expect(columns).toContain(row);
           }
         }
-        expect(normOf(detected)).toBeCloseTo(1, 14);
+        // The test's own sum over up to 3^5 squares rounds at 1e-14.
+        expect(normOf(detected)).toBeCloseTo(1, 13);
         expect(normOf(prepared)).toBeLessThanOrEqual(1 + 1e-14);
         if (request.detected === 'same') expect(prepared).toBe(detected);
       }),
-      { numRuns: 60 },
+      { numRuns: 30 },
     );
   });
 
@@ -151,7 +172,30 @@ describe.each([...modelFamilies.values()].map((family) => [family.name, family] 
         expect(b.detected).toEqual(a.detected);
         expect(b.prepared).toEqual(a.prepared);
       }),
-      { numRuns: 40 },
+      { numRuns: 20 },
+    );
+  });
+
+  it.runIf(family.productSpace !== undefined)('numbers its configurations, and H leaves none of the conserved numbers of φ', () => {
+    fc.assert(
+      fc.property(random, (raw) => {
+        const request = checkRequest(family, raw);
+        const { basis, space } = family.productSpace!(request, 'conserved');
+        expect(space.dimension).toBe(family.extent(request).hilbertDimension);
+        const configuration = new Uint16Array(space.sites);
+        const whole = family.productSpace!(request, 'whole').space;
+        let last = -1;
+        for (let rank = 0; rank < Math.min(space.dimension, 300); rank += 1) {
+          space.read(rank, configuration);
+          expect(space.rank(configuration)).toBe(rank);
+          const before = configuration.slice();
+          expect(whole.rank(configuration)).toBeGreaterThan(last);
+          last = whole.rank(configuration);
+          basis.connect(configuration, () => expect(space.rank(configuration)).toBeGreaterThanOrEqual(0));
+          expect(configuration).toEqual(before);
+        }
+      }),
+      { numRuns: 15 },
     );
   });
 });
