@@ -64,11 +64,13 @@ function bracketText({ bracket, outcome }: Boundary): string {
 /** One row a place, one column a question: brackets side by side. */
 export function boundaryOverview(boundaries: readonly Boundary[]): string {
   const questions = new Map(boundaries.map(({ questionOrdinal, question }) => [questionOrdinal, question]));
+  const names = [...questions.values()].map(({ schedule }) => scheduleText(schedule));
+  const repeated = new Set(names).size < names.length;
   const places = [...groupBy(boundaries, ({ at }) => JSON.stringify(at)).values()];
   return renderTable(places, [
     { title: 'at', value: ([first]) => coordinatesText(first.at) },
     ...[...questions].map(([ordinal, question]) => ({
-      title: scheduleText(question.schedule),
+      title: scheduleText(question.schedule) + (repeated ? `; K ${question.budget}` : ''),
       value: (place: readonly Boundary[]) => {
         const found = place.find(({ questionOrdinal }) => questionOrdinal === ordinal);
         return found ? bracketText(found) : '–';

@@ -18,6 +18,7 @@ export interface MapView {
   readonly maps: readonly PhaseMap[];
   readonly boundaries: readonly Boundary[];
   readonly choice: BoundaryChoice;
+  readonly axes: { readonly x: string; readonly y: string };
 }
 
 /** Columns of a terminal that does not tell its own. */
@@ -28,7 +29,7 @@ export async function readMapView(
   sweep: StoredSweep,
   quantity: Quantity,
   choice: BoundaryChoice,
-  axes: { readonly x: string; readonly y: string },
+  axes: MapView['axes'],
   selection: Selection,
 ): Promise<MapView> {
   const samples = await readSamples(store, sweep, quantity, selection);
@@ -36,10 +37,11 @@ export async function readMapView(
   // A place that is fixed on an axis leaves one value of it.
   const valuesOf = (axis: string) => (selection.at !== undefined && axis in selection.at ? [] : (values.get(axis) ?? []));
   const maps = phaseMapsOf(samples, { ...axes, xValues: valuesOf(axes.x), yValues: valuesOf(axes.y) });
-  // Boundaries run along x, whatever the axis; with words on it there is no order and so no boundary.
-  const along = (values.get(axes.x) ?? []).every((value) => typeof value === 'number');
+  // Boundaries run along x, whatever the axis; along words or a single value there is none.
+  const places = valuesOf(axes.x);
+  const along = places.length > 1 && places.every((value) => typeof value === 'number');
   const measured = along ? await readSamples(store, sweep, choice.quantity, selection) : [];
-  return { sweep, quantity, maps, choice, boundaries: measured.length === 0 ? [] : boundariesOf(measured, choice, axes.x) };
+  return { sweep, quantity, maps, choice, axes, boundaries: measured.length === 0 ? [] : boundariesOf(measured, choice, axes.x) };
 }
 
 /** Every map as text, one below the other. */
@@ -60,7 +62,7 @@ export async function mapText(
         range,
         boundaries,
         title: `${quantityTitle(quantity)} · ${panelTitle(map.question, map.at)}`,
-        subtitle: `${resolutionText(map.question, map.resolution)}; boundary: ${choice.words}`,
+        subtitle: `${resolutionText(map.question, map.resolution)}${boundaries.length === 0 ? '' : `; boundary: ${choice.words}`}`,
         xTitle: sweep.labels.axisTitle(map.x.axis),
         yTitle: sweep.labels.axisTitle(map.y.axis),
       }),

@@ -1,6 +1,7 @@
 /** `windrow boundary NAME`: the coupling at which an order parameter changes, as a bracket for each size and question. */
 import type { Command } from 'commander';
 import { requireAxis } from '../../analysis/curves.js';
+import { mapAxes } from '../../analysis/map-axes.js';
 import {
   BOUNDARY_COLUMNS,
   boundariesOf,
@@ -18,7 +19,7 @@ import { runVerb } from '../run-verb.js';
 import { readSamples, readStoredSweep } from '../stored-sweep.js';
 
 interface Options extends BoundaryOptions {
-  readonly along: string;
+  readonly along?: string;
   readonly question?: string;
   readonly at?: string[];
 }
@@ -26,7 +27,7 @@ interface Options extends BoundaryOptions {
 export function boundaryCommand(program: Command, io: Io): void {
   const command = verb(program, 'boundary', 'where an order parameter crosses a level or changes most steeply, as brackets')
     .argument('<name>', 'name of the sweep')
-    .option('--along <axis>', 'numeric axis to search along', 'coupling')
+    .option('--along <axis>', 'numeric axis to search along; the coupling where it varies')
     .option('--question <numbers>', 'only these questions, such as 0,2')
     .option('--at <axis=value>', 'only this value of an axis; may be repeated', collect);
   storeOption(boundaryOptions(command)).action(
@@ -36,10 +37,11 @@ export function boundaryCommand(program: Command, io: Io): void {
       const store = await openStore(context);
       const sweep = await readStoredSweep(store, name);
       const samples = await readSamples(store, sweep, choice.quantity, selection);
-      requireAxis(samples, options.along);
-      const boundaries = boundariesOf(samples, choice, options.along);
+      const along = options.along ?? mapAxes(sweep.grid.axes, Object.keys(selection.at)).x;
+      requireAxis(samples, along);
+      const boundaries = boundariesOf(samples, choice, along);
       await print(context, {
-        table: () => `Boundary of ${name} along ${sweep.labels.axisTitle(options.along)}; ${choice.words}\n\n${boundaryTable(boundaries)}`,
+        table: () => `Boundary of ${name} along ${sweep.labels.axisTitle(along)}; ${choice.words}\n\n${boundaryTable(boundaries)}`,
         json: () => boundaries.map(boundaryRow),
         csv: () => ({ columns: BOUNDARY_COLUMNS, rows: boundaries.map(boundaryRow) }),
       });

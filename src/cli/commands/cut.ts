@@ -1,6 +1,7 @@
 /** `windrow cut NAME`: one quantity along one axis, at chosen values of others. */
 import type { Command } from 'commander';
 import { type Curve, curvesOf } from '../../analysis/curves.js';
+import { mapAxes } from '../../analysis/map-axes.js';
 import { findQuantity, type Quantity } from '../../analysis/quantities.js';
 import type { Json } from '../../core/json.js';
 import { cutFigureSpec } from '../../report/cut-figure.js';
@@ -68,7 +69,7 @@ export function cutCommand(program: Command, io: Io): void {
   const command = verb(program, 'cut', 'one quantity along one axis')
     .argument('<name>', 'name of the sweep')
     .option('--field <name>', 'a numeric field of the results or an order parameter', 'winding_number')
-    .option('--along <axis>', 'axis of the cut; coupling, or size where --at fixes the coupling')
+    .option('--along <axis>', 'axis of the cut; the coupling, or the next axis that varies where --at fixes it')
     .option('--at <axis=value>', 'only this value of another axis, such as size=12; may be repeated', collect)
     .option('--question <numbers>', 'only these questions, such as 0,2')
     .option('--figures <folder>', 'also write the figure there, as SVG and PNG');
@@ -76,9 +77,9 @@ export function cutCommand(program: Command, io: Io): void {
     runVerb<[string], Options>(io, {}, async (context, options, name) => {
       const quantity = findQuantity(options.field);
       const at = parsePlace('--at', options.at);
-      const along = options.along ?? ('coupling' in at ? 'size' : 'coupling');
       const store = await openStore(context);
       const sweep = await readStoredSweep(store, name);
+      const along = options.along ?? mapAxes(sweep.grid.axes, Object.keys(at)).x;
       const curves = curvesOf(await readSamples(store, sweep, quantity, { questions: parseQuestions(options.question), at }), along);
       await print(context, {
         table: () => cutText(curves, along, quantity),

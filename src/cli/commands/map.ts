@@ -1,5 +1,6 @@
 /** `windrow map NAME`: one quantity over two axes of a sweep. */
 import type { Command } from 'commander';
+import { mapAxes } from '../../analysis/map-axes.js';
 import { findQuantity } from '../../analysis/quantities.js';
 import { boundaryChoice, boundaryOptions, type BoundaryOptions } from '../boundary-options.js';
 import { openStore } from '../compose.js';
@@ -12,19 +13,23 @@ import { readStoredSweep } from '../stored-sweep.js';
 
 interface MapOptions extends BoundaryOptions {
   readonly field: string;
-  readonly x: string;
-  readonly y: string;
+  readonly x?: string;
+  readonly y?: string;
   readonly question?: string;
   readonly at?: string[];
   readonly figures?: string;
+}
+
+function pick({ x, y }: MapOptions): { x?: string; y?: string } {
+  return { ...(x === undefined ? {} : { x }), ...(y === undefined ? {} : { y }) };
 }
 
 export function mapCommand(program: Command, io: Io): void {
   const command = verb(program, 'map', 'one quantity over size and coupling, or any two axes')
     .argument('<name>', 'name of the sweep')
     .option('--field <name>', 'a numeric field of the results or an order parameter', 'winding_number')
-    .option('--x <axis>', 'axis to the right', 'coupling')
-    .option('--y <axis>', 'axis upwards', 'size')
+    .option('--x <axis>', 'axis to the right; the coupling where it varies')
+    .option('--y <axis>', 'axis upwards; the size where it varies')
     .option('--question <numbers>', 'only these questions, such as 0,2')
     .option('--at <axis=value>', 'only this value of an axis; may be repeated', collect)
     .option('--figures <folder>', 'also write the phase diagrams there, as SVG and PNG');
@@ -35,7 +40,8 @@ export function mapCommand(program: Command, io: Io): void {
       const selection = { questions: parseQuestions(options.question), at: parsePlace('--at', options.at) };
       const store = await openStore(context);
       const sweep = await readStoredSweep(store, name);
-      const view = await readMapView(store, sweep, quantity, choice, options, selection);
+      const chosen = mapAxes(sweep.grid.axes, Object.keys(selection.at));
+      const view = await readMapView(store, sweep, quantity, choice, { ...chosen, ...pick(options) }, selection);
       await print(context, {
         table: () => mapText(view, context),
         json: () => mapDocument(view),

@@ -2,6 +2,7 @@ import { describe, expect, it } from 'vitest';
 import { boundaryOf } from '../../../src/analysis/boundary.js';
 import { cutsOf } from '../../../src/analysis/cut.js';
 import { curvesOf } from '../../../src/analysis/curves.js';
+import { mapAxes } from '../../../src/analysis/map-axes.js';
 import { boundariesOn, phaseMapsOf, valueRange } from '../../../src/analysis/phase-map.js';
 import { findQuantity, ORDER_PARAMETERS } from '../../../src/analysis/quantities.js';
 import { collectSamples, samplesOf } from '../../../src/analysis/samples.js';
@@ -168,4 +169,22 @@ describe('spacing', () => {
     expect(spacingOf([0, 1, 10])).toBe('linear');
     expect(spacingOf([1, 10])).toBe('linear');
   });
+});
+
+describe('the axes of a map', () => {
+  const axis = (name: string, ...values: (number | string)[]) => ({ name, values, unit: '' });
+  it.each([
+    ['coupling and size', [axis('size', 2, 4), axis('coupling', 1, 2)], [], 'coupling', 'size'],
+    ['another axis for a single coupling', [axis('size', 2, 4), axis('coupling', 1), axis('tilt', 0, 1)], [], 'tilt', 'size'],
+    [
+      'numbers before words',
+      [axis('size', 2), axis('coupling', 1, 2), axis('detect', 'a', 'b'), axis('tilt', 0, 1)],
+      [],
+      'coupling',
+      'tilt',
+    ],
+    ['the size alone', [axis('size', 2, 4), axis('coupling', 1)], [], 'size', 'coupling'],
+    ['the size where the coupling is held', [axis('size', 2, 4), axis('coupling', 1, 2)], ['coupling'], 'size', 'coupling'],
+    ['never an averaged axis', [axis('size', 2), axis('coupling', 1), axis('realisation', 0, 1)], [], 'coupling', 'size'],
+  ])('%s', (_name, axes, fixed, x, y) => expect(mapAxes(axes, fixed)).toEqual({ x, y }));
 });
