@@ -18,7 +18,7 @@ import { isConnectionLoss, toStoreError } from '../postgres/postgres-errors.js';
 import { findPackage, prepareBinaries, type Binaries } from './binaries.js';
 import { ensureDataFolder, ROLE, type DataFolder } from './data-folder.js';
 import { isFull, programError } from './embedded-errors.js';
-import { clearAway, isServing, PORT, readPostmaster, startPostmaster, stopPostmaster, type Started } from './postmaster.js';
+import { clearAway, clearEmpty, isServing, PORT, readPostmaster, startPostmaster, stopPostmaster, type Started } from './postmaster.js';
 import { isAlive, pause } from './processes.js';
 import type { ServerUser } from './server-user.js';
 
@@ -61,6 +61,8 @@ export class EmbeddedServer implements Server {
   readonly #log: string;
   #attachment: Promise<Attachment> | null = null;
   #binaries: Promise<Binaries> | null = null;
+  /** why there was no connection, the last time */
+  #refusal = 'no answer';
 
   constructor(options: EmbeddedOptions) {
     this.#options = options;
@@ -114,7 +116,10 @@ export class EmbeddedServer implements Server {
       if (presence === 'starting' || (sockets !== null && sockets !== before)) quiet = Date.now();
       before = sockets ?? before;
       if (Date.now() - quiet > QUIET_MS)
-        throw new WindrowError('store.locked', 'the embedded server is there but accepts no connection', { where: this.where });
+        throw new WindrowError('store.locked', 'the embedded server is there but accepts no connection', {
+          where: this.where,
+          found: this.#refusal,
+        });
       await pause(20);
     }
   }
@@ -137,7 +142,7 @@ export class EmbeddedServer implements Server {
   async #serving(data: DataFolder, quiet: number): Promise<string | null> {
     const found = await readPostmaster(data.path);
     if (found !== null && (await isServing(found, data.path))) return found.sockets;
-    if (found !== null) await clearAway(found, data.path);
+    await (found === null ? clearEmpty(data.path) : clearAway(found, data.path));
     await rotate(this.#log);
     const before = await sizeOf(this.#log);
     const started = await startPostmaster((await this.#programs(data.user)).postgres, data, this.#log);
@@ -146,13 +151,20 @@ export class EmbeddedServer implements Server {
       return (await readPostmaster(data.path))?.sockets ?? null;
     }
     const output = await readFrom(this.#log, before);
-    if (!isFull(output) && OCCUPIED.test(output) && Date.now() - quiet < QUIET_MS) return null;
+    if (!isFull(output) && OCCUPIED.test(output) && Date.now() - quiet < QUIET_MS) {
+      this.#refusal = output.trim();
+      return null;
+    }
     throw programError('the embedded server', output, this.where);
   }
 
   /** A session that shows this process is there, or why there is none: a server on its way up or down, or gone. */
   async #present(sockets: string): Promise<pg.Client | 'starting' | 'away'> {
-    const presence = new pg.Client({ ...connection(sockets), application_name: `${PRESENCE_NAME}${process.pid}` });
+    const presence = new pg.Client({
+      ...connection(sockets),
+      application_name: `${PRESENCE_NAME}${process.pid}`,
+      connectionTimeoutMillis: 10_000,
+    });
     presence.on('error', () => undefined);
     try {
       await presence.connect();
@@ -160,6 +172,7 @@ export class EmbeddedServer implements Server {
       return presence;
     } catch (error) {
       await presence.end().catch(() => undefined);
+      this.#refusal = (error as Error).message;
       if (error instanceof pg.DatabaseError && error.code === CANNOT_CONNECT_NOW) return 'starting';
       if (isConnectionLoss(error)) return 'away';
       throw toStoreError(error, this.where);

@@ -60,6 +60,16 @@ export async function isServing({ pid }: Postmaster, data: string): Promise<bool
   return command === 'postgres' && state !== 'Z' && state !== 'X' && owner?.uid === uid;
 }
 
+/** How long a starting server may take between making its postmaster.pid and writing into it. */
+const EMPTY_MS = 5_000;
+
+/** Takes away an empty postmaster.pid: what is left when a start broke off between making and writing it. */
+export async function clearEmpty(data: string): Promise<void> {
+  const file = join(data, 'postmaster.pid');
+  const found = await stat(file).catch(() => null);
+  if (found?.size === 0 && Date.now() - found.mtimeMs > EMPTY_MS) await rm(file, { force: true });
+}
+
 /**
  * Clears away what a dead server left. Its postmaster.pid stays where PostgreSQL itself sees that the process is gone (it then also
  * looks for processes of that server that still run); a file whose process id is somebody else's goes. It is renamed first and
@@ -172,14 +182,28 @@ export async function startPostmaster(
   }
 }
 
+/** How long the server may take to write everything; then it stops at once, and recovers at its next start. */
 const STOP_MS = 60_000;
+const STOP_AT_ONCE_MS = 10_000;
 
 /** Fast shutdown: sessions end, everything is written. Resolves when the data folder is free. */
 export async function stopPostmaster(data: string): Promise<void> {
   const running = await readPostmaster(data);
   if (running === null || !(await isServing(running, data))) return;
-  process.kill(running.pid, 'SIGINT');
-  const deadline = Date.now() + STOP_MS;
-  while ((await readPostmaster(data))?.pid === running.pid && (await isServing(running, data)) && Date.now() < deadline) await pause(10);
+  if (!(await endsBy('SIGINT', running, data, STOP_MS))) await endsBy('SIGQUIT', running, data, STOP_AT_ONCE_MS);
   if (running.sockets !== null) await removeSockets(running.sockets);
+}
+
+async function endsBy(signal: NodeJS.Signals, running: Postmaster, data: string, limit: number): Promise<boolean> {
+  const begun = Date.now();
+  try {
+    process.kill(running.pid, signal);
+  } catch {
+    return true;
+  }
+  while (Date.now() - begun < limit) {
+    if ((await readPostmaster(data))?.pid !== running.pid || !(await isServing(running, data))) return true;
+    await pause(10);
+  }
+  return false;
 }
