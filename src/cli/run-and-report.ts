@@ -1,12 +1,12 @@
 /** What `sweep` and `resume` share: the run with its progress, the summary, and the report after it. */
-import { join } from 'node:path';
+import { mapAxes } from '../analysis/map-axes.js';
 import { findQuantity } from '../analysis/quantities.js';
 import type { SweepRun, SweepSummary } from '../coordinator/types.js';
 import type { Json } from '../core/json.js';
 import { formatCount, formatSeconds } from '../report/format.js';
 import { renderPairs, renderTable } from '../report/table.js';
 import type { ResultStore } from '../store/types.js';
-import { boundaryChoice, boundaryRow, boundaryTable } from './boundary-options.js';
+import { boundaryChoice, boundaryOverview, boundaryRow } from './boundary-options.js';
 import { memoryLimit, openWorkers, storeText } from './compose.js';
 import { type Context, EXIT, type ExitStatus, say } from './context.js';
 import { type MapView, mapText, readMapView, writeMapFigures } from './map-view.js';
@@ -100,7 +100,9 @@ async function reportText(context: Context, { view, figures }: Report, folder: s
   return [
     await mapText({ ...view, maps: shown }, context),
     ...(rest > 0 ? [`${rest} more: \`windrow map ${name} --question …\``] : []),
-    `Boundary along ${view.sweep.labels.axisTitle('coupling')}; ${view.choice.words}\n\n${boundaryTable(view.boundaries)}`,
+    ...(view.boundaries.length === 0
+      ? []
+      : [`Boundary along ${view.sweep.labels.axisTitle(view.axes.x)}; ${view.choice.words}\n\n${boundaryOverview(view.boundaries)}`]),
     `Figures in ${folder}:\n${figures.map((path) => `  ${path}`).join('\n')}`,
   ].join('\n\n');
 }
@@ -108,10 +110,11 @@ async function reportText(context: Context, { view, figures }: Report, folder: s
 async function makeReport(store: ResultStore, name: string, folder: string): Promise<Report> {
   const sweep = await readStoredSweep(store, name);
   const choice = boundaryChoice({});
+  const axes = mapAxes(sweep.grid.axes);
   const views: MapView[] = [];
   const figures: string[] = [];
   for (const field of ['winding_number', 'capped_mean']) {
-    const view = await readMapView(store, sweep, findQuantity(field), choice, { x: 'coupling', y: 'size' }, {});
+    const view = await readMapView(store, sweep, findQuantity(field), choice, axes, {});
     views.push(view);
     figures.push(...(await writeMapFigures(view, folder)));
   }
@@ -130,7 +133,7 @@ export async function finish(context: Context, store: ResultStore, summary: Swee
   const { shares, failures, ...counts } = summary;
   const flat = { ...counts, cells_per_second: rate(summary) };
   context.log.info({ sweep: summary.sweep, outcome: summary.outcome, shares }, 'sweep ended');
-  if (report !== undefined && summary.outcome === 'done') say(context, `windrow: drawing figures into ${join(report)}`);
+  if (report !== undefined && summary.outcome === 'done') say(context, `windrow: drawing figures into ${report}`);
   const made = report === undefined || summary.outcome !== 'done' ? null : await makeReport(store, summary.sweep, report);
   await print(context, {
     table: async () =>
