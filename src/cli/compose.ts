@@ -16,6 +16,7 @@ import type { ComputePool, JobQueue } from '../queue/types.js';
 import { openEmbeddedStore } from '../store/embedded/embedded-store.js';
 import { openPostgresStore } from '../store/postgres/postgres-store.js';
 import type { ResultStore } from '../store/types.js';
+import { METHOD_VERSION } from '../sweep/identity.js';
 import { type Context, say } from './context.js';
 
 /** Where results live, in words. */
@@ -68,11 +69,23 @@ export interface Workers {
  */
 export async function openWorkers(context: Context): Promise<Workers> {
   const { settings, closers } = context;
-  if (settings.redis !== null) return { queue: await openCluster(context), pool: null, window: CLUSTER_WINDOW };
+  if (settings.redis !== null) {
+    const queue = await openCluster(context);
+    await tellIfAlone(context, queue);
+    return { queue, pool: null, window: CLUSTER_WINDOW };
+  }
   const pool = openPool(context);
   const queue = openInProcessQueue();
   closers.push(() => queue.close());
   return { queue, pool };
+}
+
+/** Says when there is nobody to compute what is handed out, and why, where workers of another version are alive. */
+export async function tellIfAlone(context: Context, { workers }: BullMqQueue): Promise<void> {
+  const versions = (await workers.list()).map(({ methodVersion }) => methodVersion);
+  if (versions.includes(METHOD_VERSION)) return;
+  const others = versions.length === 0 ? '' : `; those alive compute ${[...new Set(versions)].join(', ')}: update the older side`;
+  say(context, `windrow: no worker of method ${METHOD_VERSION} is alive, start one with \`windrow worker\`${others}`);
 }
 
 /** The lanes of the cluster. @throws settings.invalid where the large one is not the larger */

@@ -35,7 +35,7 @@ type Halt = 'interrupted' | 'stopped' | Error;
 export async function runSweep(run: SweepRun): Promise<SweepSummary> {
   const { grid, store, queue, pool } = run;
   const begun = performance.now();
-  await register(run);
+  await openSweep(run);
 
   const halted = new AbortController();
   const halt = (reason: Halt): void => halted.abort(reason);
@@ -141,8 +141,13 @@ export async function runSweep(run: SweepRun): Promise<SweepSummary> {
 /** Name of the lock that whoever hands out a sweep's jobs holds. */
 export const sweepLock = (sweep: string): string => `sweep ${sweep}`;
 
-/** Registers the sweep (again) and opens it. */
-async function register({ grid, document, store, retryFailed }: SweepRun): Promise<void> {
+/** Registers the sweep (again) and opens it; in a cluster any worker then carries it on. @throws sweep.differs */
+export async function openSweep({
+  grid,
+  document,
+  store,
+  retryFailed,
+}: Pick<SweepRun, 'grid' | 'document' | 'store' | 'retryFailed'>): Promise<void> {
   const record = await withRetry(() =>
     store.registerSweep({
       name: grid.name,

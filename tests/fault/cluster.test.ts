@@ -32,6 +32,22 @@ describe.skipIf(opened === null)('a cluster', { timeout: 180_000 }, () => {
     expect((await cluster.client.keys(`${cluster.prefix}:*`)).filter((key) => /:job-|worker/.test(key))).toEqual([]);
   });
 
+  it('leaves a sweep to the workers, shows them, and follows it', async () => {
+    const file = costlySweep('detached', 0.05);
+    const detached = cluster.sweep(file, ['--detach']);
+    expect(await detached.end, detached.stderr()).toBe(0);
+    expect(detached.stderr()).toContain('no worker of method');
+    cluster.worker();
+    await cluster.untilStored(file.name, 1);
+    const shown = cluster.cli(['status', '--workers', '--format', 'json']);
+    expect(await shown.end, shown.stderr()).toBe(0);
+    expect(JSON.parse(shown.stdout())).toMatchObject([{ state: 'working', threads: 1, lanes: 'small' }]);
+    const followed = cluster.cli(['status', file.name, '--follow', '--format', 'json']);
+    expect(await followed.end, followed.stderr()).toBe(0);
+    expect(JSON.parse(followed.stdout())).toMatchObject({ state: 'done', stored_cells: cellsOf() });
+    await sameRows(file);
+  });
+
   it('loses a worker to kill -9 in mid-job', async () => {
     const file = costlySweep('killed-worker', 0.1);
     const victim = cluster.worker();

@@ -10,7 +10,14 @@ import { storeOption, verb } from '../options.js';
 import { print } from '../print.js';
 import { runVerb } from '../run-verb.js';
 import { failureTable } from '../run-and-report.js';
+import { followSweep } from '../follow-sweep.js';
+import { showWorkers } from '../show-workers.js';
 import { findStoredSweep } from '../stored-sweep.js';
+
+interface Options {
+  readonly workers?: boolean;
+  readonly follow?: boolean;
+}
 
 interface Entry {
   readonly record: SweepRecord;
@@ -100,8 +107,10 @@ export function statusCommand(program: Command, io: Io): void {
     '[name]',
     'name of a sweep',
   );
+  command.option('--workers', 'the workers of the cluster instead').option('--follow', 'stay and show progress until the sweep ends');
   storeOption(command).action(
-    runVerb<[string | undefined], object>(io, {}, async (context, _options, name) => {
+    runVerb<[string | undefined], Options>(io, {}, async (context, options, name) => {
+      if (options.workers === true) return showWorkers(context);
       const store = await openStore(context);
       if (name === undefined) {
         const entries: Entry[] = [];
@@ -109,6 +118,7 @@ export function statusCommand(program: Command, io: Io): void {
         await printList(context, entries);
         return EXIT.done;
       }
+      if (options.follow === true) await followSweep(context, store, name);
       const entry = await entryOf(store, await findStoredSweep(store, name));
       await print(context, {
         table: () => detailText(entry),

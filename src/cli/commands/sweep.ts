@@ -1,15 +1,16 @@
 /** `windrow sweep FILE`: computes every cell of a sweep file that the store does not hold yet. */
 import type { Command } from 'commander';
 import type { Json } from '../../core/json.js';
-import { runSweep } from '../../coordinator/run-sweep.js';
+import { openSweep, runSweep } from '../../coordinator/run-sweep.js';
 import { formatBytes, formatCount, formatNumber, formatSeconds } from '../../report/format.js';
 import { renderPairs } from '../../report/table.js';
+import type { SweepDocument } from '../../sweep/document.js';
 import { estimateSweep } from '../../sweep/estimate.js';
 import { expandGrid } from '../../sweep/grid.js';
 import { readSweepFile } from '../../sweep/read-file.js';
 import type { Grid } from '../../sweep/types.js';
-import { memoryLimit, openStore, threadCount } from '../compose.js';
-import { type Context, EXIT, type Io } from '../context.js';
+import { memoryLimit, openCluster, openStore, tellIfAlone, threadCount } from '../compose.js';
+import { type Context, EXIT, type ExitStatus, type Io } from '../context.js';
 import { computeOptions, storeOption, verb } from '../options.js';
 import { print } from '../print.js';
 import { runVerb } from '../run-verb.js';
@@ -19,6 +20,8 @@ interface Options {
   readonly estimate?: boolean;
   readonly report?: string;
   readonly allowLarge?: boolean;
+  readonly certify?: boolean;
+  readonly detach?: boolean;
 }
 
 async function printEstimate(context: Context, grid: Grid): Promise<void> {
@@ -62,20 +65,38 @@ async function printEstimate(context: Context, grid: Grid): Promise<void> {
   });
 }
 
+/** Leaves a sweep to the workers of the cluster. @throws settings.invalid without one */
+async function detach(context: Context, grid: Grid, document: Json): Promise<ExitStatus> {
+  await tellIfAlone(context, await openCluster(context));
+  const store = await openStore(context);
+  await openSweep({ grid, document, store });
+  const row = { sweep: grid.name, points: grid.points, cells: grid.cells };
+  await print(context, {
+    table: () => `Sweep ${grid.name} is left to the workers; \`windrow status ${grid.name} --follow\` shows how it goes.`,
+    json: () => row,
+    csv: () => ({ columns: Object.keys(row), rows: [row] }),
+  });
+  return EXIT.done;
+}
+
 export function sweepCommand(program: Command, io: Io): void {
   const command = verb(program, 'sweep', 'compute a sweep file; cells that are in the store already are reused')
     .argument('<file>', 'sweep file, YAML or JSON')
     .option('--estimate', 'print grid, memory and time without running')
     .option('--report <folder>', 'afterwards show phase diagram and boundary, and write figures there')
-    .option('--allow-large', 'accept a grid above two million cells');
+    .option('--certify', 'count accessible dimensions exactly, by modular arithmetic; the same as `certify: true` in the file')
+    .option('--allow-large', 'accept a grid above two million cells')
+    .option('--detach', 'leave the sweep to the workers of a cluster and return at once');
   storeOption(computeOptions(command)).action(
     runVerb<[string], Options>(io, { drains: true }, async (context, options, file) => {
-      const document = readSweepFile(file, { allowLarge: options.allowLarge === true });
+      const read = readSweepFile(file, { allowLarge: options.allowLarge === true });
+      const document: SweepDocument = options.certify === true ? { ...read, certify: true } : read;
       const grid = expandGrid(document);
       if (options.estimate === true) {
         await printEstimate(context, grid);
         return EXIT.done;
       }
+      if (options.detach === true) return detach(context, grid, document as unknown as Json);
       const store = await openStore(context);
       const summary = await runWith(context, store, options, (run) => runSweep({ ...run, grid, document: document as unknown as Json }));
       return finish(context, store, summary, options);
