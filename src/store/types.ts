@@ -20,13 +20,19 @@ export interface SweepRecord {
   readonly document: Json;
   readonly methodVersion: string;
   readonly points: number;
+  /** what the sweep is made of: every point of it answers them */
   readonly questions: readonly QuestionRecord[];
+  /** asked later, of stored measures; their ordinals go on where those of `questions` end */
+  readonly followUps: readonly QuestionRecord[];
   /** 'stopping' asks feeders to hand out no new jobs */
   readonly state: 'open' | 'stopping' | 'done';
   /** ISO 8601, by the store's clock */
   readonly created: string;
   readonly updated: string;
 }
+
+/** A sweep as it is registered; the rest is the store's to say. */
+export type NewSweep = Omit<SweepRecord, 'state' | 'created' | 'updated' | 'followUps'>;
 
 export interface SweepProgress {
   readonly points: number;
@@ -65,18 +71,33 @@ export interface CellRow {
 
 export interface CellQuery {
   readonly sweep: string;
-  /** ordinals of the sweep's questions; all when absent */
+  /** ordinals of the sweep's questions and follow-ups; all when absent */
   readonly questions?: readonly number[];
+}
+
+/** Names of roles that cannot log in themselves; logins are put into them. */
+export interface StoreRoles {
+  /** computes: may add results, set the state of sweeps and clear failures */
+  readonly writer: string;
+  /** only reads */
+  readonly reader: string;
 }
 
 export interface ResultStore {
   /** Brings the schema up to date; safe to call from many processes at once. */
   migrate(): Promise<void>;
+  /** Makes the roles of the store where they are missing and gives them their rights; the schema must be up to date. */
+  grant(): Promise<StoreRoles>;
   /** @throws sweep.differs when the name is taken by another document */
-  registerSweep(sweep: Omit<SweepRecord, 'state' | 'created' | 'updated'>): Promise<SweepRecord>;
+  registerSweep(sweep: NewSweep): Promise<SweepRecord>;
   findSweep(name: string): Promise<SweepRecord | null>;
   listSweeps(): Promise<readonly SweepRecord[]>;
   setSweepState(name: string, state: SweepRecord['state']): Promise<void>;
+  /**
+   * Enrols questions that a sweep was not made of (idempotent); those it has already keep their ordinal. Enrolment, progress and with them
+   * resuming see only what was swept; `cells` shows both. Returned in the order given. @throws sweep.unknown
+   */
+  followUp(sweep: string, questions: readonly Omit<QuestionRecord, 'ordinal'>[]): Promise<readonly QuestionRecord[]>;
   /** Enrols grid points in a sweep (idempotent) and tells what of them is missing. */
   enrol(sweep: string, points: readonly GridPoint[]): Promise<readonly MissingPoint[]>;
   /** Stored measures by point id; ids that are not stored are absent. */

@@ -8,13 +8,15 @@
 import pg from 'pg';
 import { WindrowError } from '../../core/errors.js';
 import { digest } from '../../core/json.js';
+import { grantRoles } from '../grant.js';
 import { migrate, refuseNewer, schemaState } from '../migrate.js';
-import type { CellQuery, CellRow, MissingPoint, ResultStore, SaveBatch, SweepProgress, SweepRecord } from '../types.js';
+import type { CellQuery, CellRow, MissingPoint, NewSweep, ResultStore, SaveBatch, StoreRoles, SweepProgress, SweepRecord } from '../types.js';
 import type { MeasuredPoint } from '../../spectral/types.js';
-import type { GridPoint } from '../../sweep/types.js';
+import type { GridPoint, QuestionRecord } from '../../sweep/types.js';
 import { readCells } from './cells.js';
 import { createPool, Database, type Server } from './database.js';
 import { readMeasures } from './measures.js';
+import { enrolFollowUps } from './follow-ups.js';
 import { deleteFailures, saveBatch } from './save.js';
 import { enrol, readProgress, readSweeps, registerSweep, requireSweep, setSweepState } from './sweeps.js';
 
@@ -92,7 +94,11 @@ class PostgresStore implements ResultStore {
     this.#current = Promise.resolve();
   }
 
-  async registerSweep(sweep: Omit<SweepRecord, 'state' | 'created' | 'updated'>): Promise<SweepRecord> {
+  async grant(): Promise<StoreRoles> {
+    return this.#transaction(grantRoles);
+  }
+
+  async registerSweep(sweep: NewSweep): Promise<SweepRecord> {
     return this.#transaction((client) => registerSweep(client, sweep));
   }
 
@@ -106,6 +112,10 @@ class PostgresStore implements ResultStore {
 
   async setSweepState(name: string, state: SweepRecord['state']): Promise<void> {
     return this.#session((client) => setSweepState(client, name, state));
+  }
+
+  async followUp(sweep: string, questions: readonly Omit<QuestionRecord, 'ordinal'>[]): Promise<readonly QuestionRecord[]> {
+    return this.#transaction((client) => enrolFollowUps(client, sweep, questions));
   }
 
   async enrol(sweep: string, points: readonly GridPoint[]): Promise<readonly MissingPoint[]> {
