@@ -24,6 +24,8 @@ export interface GroundState {
 /** Vectors kept between restarts: 2.4 kB a row. */
 const BASIS = 300;
 const RESTARTS = 60;
+/** Steps between looks at the residual. */
+const CHECKED = 16;
 /** Residual of the ground state and of the level above it, relative to ‖H‖. */
 const SHARP = 8 * Number.EPSILON;
 const ROUGH = 1e-9;
@@ -54,7 +56,7 @@ function lowestPair(matrix: HermitianMatrix, known: readonly StateVector[], tole
   for (const plane of planesOf(start)) for (let i = 0; i < n; i += 1) plane[i] = stream.normal();
   let best = Infinity;
   for (let restart = 0; restart < RESTARTS; restart += 1) {
-    const { pair, residual, exhausted } = iterate(matrix, known, start);
+    const { pair, residual, exhausted } = iterate(matrix, known, start, tolerance);
     // Rounding bounds the residual from below: where a restart no longer halves it, that is what there is.
     const settled = residual <= 1000 * tolerance && residual > best / 2;
     if (exhausted || residual <= tolerance || settled) return pair;
@@ -67,11 +69,12 @@ function lowestPair(matrix: HermitianMatrix, known: readonly StateVector[], tole
   });
 }
 
-/** One run of at most BASIS steps; exhausted where the basis spans all that the start vector reaches. */
+/** One run until the residual of the lowest Ritz pair is below the tolerance, or of BASIS steps; exhausted where the basis spans all that the start vector reaches. */
 function iterate(
   matrix: HermitianMatrix,
   known: readonly StateVector[],
   start: StateVector,
+  tolerance: number,
 ): { readonly pair: Pair; readonly residual: number; readonly exhausted: boolean } {
   const n = matrix.dimension;
   const steps = Math.min(BASIS, n - known.length);
@@ -92,6 +95,7 @@ function iterate(
     orthogonalise(w, [...known, ...basis]);
     residual = Math.sqrt(squaredNorm(w));
     if (basis.length === steps || residual <= 4 * Number.EPSILON * before) break;
+    if (basis.length % CHECKED === 0 && residual * lastComponent(alpha, beta) <= tolerance) break;
     beta.push(residual);
     scale(w, 1 / residual);
     q = w;
@@ -105,6 +109,14 @@ function iterate(
   });
   scale(vector, 1 / Math.sqrt(squaredNorm(vector)));
   return { pair: { energy, vector }, residual: residual * Math.abs(rows[m - 1][0]), exhausted: m === n - known.length };
+}
+
+/** Modulus of the last component of the lowest eigenvector of T. */
+function lastComponent(alpha: readonly number[], beta: readonly number[]): number {
+  const last = new Float64Array(alpha.length);
+  last[alpha.length - 1] = 1;
+  tridiagonalEigen(Float64Array.from(alpha), Float64Array.from(beta), [last]);
+  return Math.abs(last[0]);
 }
 
 const planesOf = (x: StateVector): Float64Array[] => (x.im === null ? [x.re] : [x.re, x.im]);

@@ -85,7 +85,7 @@ function anyParameters(family: ModelFamily): fc.Arbitrary<Record<string, unknown
     if (/^a finite number(, or|$)/.test(allowed)) values[name] = energy;
     else if (/^[a-z-]+( \| [a-z-]+)+$/.test(allowed)) values[name] = fc.constantFrom(...allowed.split(' | '));
   }
-  return fc.record(values) as fc.Arbitrary<Record<string, unknown>>;
+  return fc.record(values);
 }
 
 /** For families without their own requests: any parameters, small sizes, the named states that fit and drawn ones. */
