@@ -37,10 +37,16 @@ export interface SpectralKernel {
   householder(matrix: HermitianMatrix, start: StateVector, carried: StateVector | null): Tridiagonalisation;
 
   /**
-   * Lanczos iteration from φ with full reorthogonalisation: m steps take about 2nm² flops and 8nm bytes a plane. Stops where everything that
-   * φ can reach has converged, at n, or after `maximumSteps`.
+   * Lanczos iteration from φ, kept orthogonal as far as T needs it: m steps take at most about 4nm² flops and 8nm bytes a plane. Stops
+   * where everything that φ can reach has converged, at n, or after `maximumSteps`.
    */
   lanczos(matrix: HermitianMatrix, start: StateVector, carried: StateVector | null, maximumSteps: number): Tridiagonalisation;
+
+  /**
+   * Most steps of `lanczos` worth taking with a sparse matrix before the turn to `householder`; n where there is no turn.
+   * @param plain matrix and start vector are real and nothing is carried
+   */
+  lanczosLimit(dimension: number, plain: boolean): number;
 
   /**
    * Eigenvalues of the real symmetric tridiagonal T, ascending. Each of `rows` (length n) is replaced by row·Z, Z the matrix of

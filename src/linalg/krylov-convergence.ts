@@ -46,12 +46,12 @@ export function krylovConverged(
 /**
  * A necessary condition in O(m): with f and l the first and last components of the eigenvectors of T, convergence bounds Σ|f l| by `limit`
  * and so |e_1ᵀ(T − x − iy)⁻¹e_m| by limit/y, whatever x and y are. That element is the product of the off-diagonals over the pivots of
- * T − x − iy. A y of a few spacings of levels lets it decay little where the two ends are still coupled.
+ * T − x − iy. A y below the spacing of levels lets it decay little where the two ends are still coupled.
  */
 function stillCoupled(alpha: Float64Array, beta: Float64Array, limit: number): boolean {
   const m = alpha.length;
   const x = alpha[0];
-  const y = 4 / m;
+  const y = 0.25 / m;
   let re = 0;
   let im = -y;
   let logarithm = -Math.log(Math.hypot(re, im));

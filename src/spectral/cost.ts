@@ -2,8 +2,9 @@
  * What a spectral measure will take, before anything is built: for the estimate of a sweep, for spreading points over jobs, and for the
  * memory limit. An upper bound in bytes; flops are of the route's leading term.
  */
+import { defaultKernel } from '../linalg/default-kernel.js';
 import type { Extent } from '../models/types.js';
-import { lanczosLimit, SMALL } from './reduce.js';
+import { SMALL } from './reduce.js';
 
 export interface MeasureCost {
   /** peak of typed arrays alive at once, the matrix and the states included */
@@ -37,9 +38,10 @@ export function measureCost(extent: Extent): MeasureCost {
   if (extent.storage === 'dense' || n <= SMALL) {
     return { bytes: stored + vectors + packed, flops: householder + ql, route: 'householder-ql' };
   }
-  const steps = lanczosLimit(n);
+  const steps = Math.min(n, defaultKernel.lanczosLimit(n, !extent.complex));
   const lanczos = (2 * n * steps ** 2 + 2 * extent.nonzeros * steps) * complexFactor;
-  // The Lanczos basis (half the packed triangle) may still await collection when the triangle is allocated.
   const basis = n * steps * BYTES * planes;
+  if (steps === n) return { bytes: 2 * stored + vectors + basis, flops: lanczos / 2 + ql, route: 'lanczos-ql' };
+  // The basis (half the packed triangle) may still await collection when the triangle is allocated.
   return { bytes: stored + vectors + packed + basis, flops: lanczos + householder + ql, route: 'lanczos-ql' };
 }

@@ -3,9 +3,11 @@
  *
  * - tridiagonal H: QL on H itself, carrying the rows φ† and ψ†. O(n²) for any pair of states.
  * - dense or small H: Householder from φ, then QL. About 4n³/3 flops.
- * - larger sparse H: Lanczos from φ for at most n/4 steps, a tenth of Householder's flops and a fifth of its time; done where φ reaches that few levels
- *   (symmetry, fragmentation, localisation). Otherwise Householder, which is both cheaper and smaller than Lanczos to the end.
+ * - larger sparse H: Lanczos from φ for as many steps as the kernel finds worth it, a quarter of n as a rule: done where φ reaches that few
+ *   levels (symmetry, fragmentation, localisation), at a tenth of Householder's flops. Otherwise Householder, which is then cheaper and
+ *   smaller than Lanczos to the end.
  */
+import { isComplexPair } from '../linalg/apply.js';
 import type { SpectralKernel } from '../linalg/kernel.js';
 import type { HermitianMatrix, StateVector, TridiagonalMatrix } from '../linalg/matrix.js';
 import type { RawLevels } from './levels.js';
@@ -20,16 +22,12 @@ export interface Reduction {
   readonly structuralDimension: number | null;
 }
 
-/** Most Lanczos steps taken before turning to Householder. */
-export function lanczosLimit(dimension: number): number {
-  return Math.ceil(dimension / 4);
-}
-
 /** @param prepared null for the return problem */
 export function reduce(matrix: HermitianMatrix, detected: StateVector, prepared: StateVector | null, kernel: SpectralKernel): Reduction {
   if (matrix.kind === 'tridiagonal') return reduceTridiagonal(matrix, detected, prepared, kernel);
   if (matrix.kind === 'sparse' && matrix.dimension > SMALL) {
-    const started = kernel.lanczos(matrix, detected, prepared, lanczosLimit(matrix.dimension));
+    const limit = kernel.lanczosLimit(matrix.dimension, prepared === null && !isComplexPair(matrix, detected));
+    const started = kernel.lanczos(matrix, detected, prepared, limit);
     if (started.complete) return finish(started, 'lanczos-ql', kernel);
   }
   return finish(kernel.householder(matrix, detected, prepared), 'householder-ql', kernel);

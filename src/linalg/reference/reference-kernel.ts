@@ -10,5 +10,6 @@ export const referenceKernel: SpectralKernel = {
   name: 'typescript',
   householder: (matrix, start, carried) => (isComplexPair(matrix, start) ? householderComplex : householderReal)(matrix, start, carried),
   lanczos,
+  lanczosLimit: (dimension) => Math.ceil(dimension / 4),
   eigen: tridiagonalEigen,
 };

@@ -13,6 +13,9 @@ import { addresses, takeWorkspace, type Workspace } from './workspace.js';
 const SEMIORTHOGONAL = Math.sqrt(Number.EPSILON);
 const NEARLY_ORTHOGONAL = 1e-13;
 
+/** The share of the steps up to which it is asked whether the iteration is done. */
+const ASKED = 0.75;
+
 function layOut(n: number, nonzeros: number) {
   const { take, bytes } = addresses();
   const vector = (): number => take(padded(n));
@@ -25,7 +28,7 @@ function layOut(n: number, nonzeros: number) {
     beta: vector(),
     even: take(n + 2),
     odd: take(n + 2),
-    state: take(2),
+    residual: take(1),
     carried: take(2 * padded(n)),
     overlaps: vector(),
   };
@@ -68,15 +71,18 @@ export function lanczos(matrix: SparseMatrix, start: StateVector, carried: State
         at.beta,
         at.even + 8,
         at.odd + 8,
-        at.state,
+        at.residual,
         m,
         to,
         threshold,
         BREAKDOWN,
       );
       m = Math.abs(done);
-      const residual = workspace.view(at.state, 2)[1];
-      complete = done < 0 || krylovConverged(copied(at.alpha, m), copied(at.beta, m - 1), residual, n, norm * scale, tridiagonalEigen);
+      const [residual] = workspace.view(at.residual, 1);
+      // Close to n the steps that are left cost less than asking.
+      const ask = m === end || m <= ASKED * n;
+      complete =
+        done < 0 || (ask && krylovConverged(copied(at.alpha, m), copied(at.beta, m - 1), residual, n, norm * scale, tridiagonalEigen));
     }
     return {
       diagonal: copied(at.alpha, m).map((x) => x / scale),

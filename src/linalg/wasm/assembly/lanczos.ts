@@ -3,15 +3,11 @@
  *
  * Source: The Lanczos algorithm with partial reorthogonalization, Mathematics of Computation 42, 115 (1984),
  * 10.1090/S0025-5718-1984-0725988-X (from memory). A recurrence estimates ω_ki = q_k·q_i for all i < k; only where one of them has grown
- * past a threshold is the next vector orthogonalised against all before it, and the one after it once more, as two neighbours determine
- * what follows. As long as no |ω| exceeds √ε, the computed T is that of an exactly orthogonal basis to rounding.
+ * past a threshold are the last vector and the next one orthogonalised against all before them, both in one reading of the basis, as two
+ * neighbours determine what follows. As long as no |ω| exceeds √ε, the computed T is that of an exactly orthogonal basis to rounding: what
+ * is taken from the last vector lies in the span of those before it. Orthogonalising only where |ω| is large spares next to nothing.
  */
 import { dot, scaleBy, subtractScaled } from './vectors';
-
-/** Set where the next vector is to be orthogonalised whatever the estimates are. */
-const FORCED: usize = 0;
-/** The length of the last residual. */
-const RESIDUAL: usize = 8;
 
 /** What an orthogonalisation leaves behind, and what one step adds, in units of ε: generous, for a norm of H at most one. */
 const LEFT: f64 = 1;
@@ -24,7 +20,7 @@ const ADDED: f64 = 2;
  * @param basis vectors one after the other; vector 0 is the start vector; room for `to` + 1 of them (n at most)
  * @param alpha, beta receive diagonal and off-diagonals
  * @param even, odd estimates ω of vectors of even and odd number, zero before step 0; each with one number of zero in front
- * @param state two numbers, zero before step 0; the second one is the length of the last residual
+ * @param state receives the length of the last residual
  * @param threshold for |ω|
  * @param breakdown a residual not above this ends the iteration
  * @returns the number of steps done, negative where the iteration has ended: at n, or by a breakdown
@@ -67,15 +63,15 @@ export function lanczosSteps(
     if (length > breakdown) {
       const now = k & 1 ? odd : even;
       const next = k & 1 ? even : odd;
-      const worst = estimate(k, alpha, beta, length, now, next, left);
-      const forced = f64.load(state + FORCED) != 0;
-      if (worst > threshold || forced) {
-        length = orthogonalise(basis, stride, k + 1, w, length, breakdown, blocks);
-        for (let i = 0; i <= k; i++) f64.store(next + ((<usize>i) << 3), left);
-        f64.store(state + FORCED, forced ? 0 : 1);
+      if (estimate(k, alpha, beta, length, now, next, left) > threshold) {
+        length = orthogonalise(basis, stride, k, w, length, breakdown, blocks);
+        for (let i: usize = 0; i < <usize>k; i++) {
+          f64.store(now + (i << 3), left);
+          f64.store(next + (i << 3), left);
+        }
       }
     }
-    f64.store(state + RESIDUAL, length);
+    f64.store(state, length);
     if (length <= breakdown) return -(k + 1);
     f64.store(beta + at, length);
     const fresh = q + stride;
@@ -118,29 +114,31 @@ function estimate(k: i32, alpha: usize, beta: usize, length: f64, now: usize, ne
   return worst;
 }
 
-/** Orthogonalises w against the first `count` vectors until a pass leaves it nearly as long as it was; its length. */
-function orthogonalise(basis: usize, stride: usize, count: i32, w: usize, length: f64, breakdown: f64, blocks: i32): f64 {
+/**
+ * Orthogonalises vector k and w against the vectors before k, then w against vector k; w again until a pass leaves it nearly as long as it
+ * was. Returns its length.
+ */
+function orthogonalise(basis: usize, stride: usize, k: i32, w: usize, length: f64, breakdown: f64, blocks: i32): f64 {
+  const last = basis + <usize>k * stride;
+  let q = basis;
+  for (; q + 4 * stride <= last; q += 4 * stride) fourFromTwo(q, stride, last, w);
+  for (; q < last; q += stride) {
+    subtractScaled(last, dot(q, last, blocks), q, blocks);
+    subtractScaled(w, dot(q, w, blocks), q, blocks);
+  }
+  subtractScaled(w, dot(last, w, blocks), last, blocks);
   for (let pass = 0; pass < 5; pass++) {
-    let q = basis;
-    let k = 0;
-    for (; k + 3 < count; k += 4) {
-      fourAtOnce(q, stride, w, blocks);
-      q += 4 * stride;
-    }
-    for (; k < count; k++) {
-      subtractScaled(w, dot(q, w, blocks), q, blocks);
-      q += stride;
-    }
     const after = Math.sqrt(dot(w, w, blocks));
     const enough = after > 0.7 * length || after <= breakdown;
     length = after;
     if (enough) break;
+    for (q = basis; q <= last; q += stride) subtractScaled(w, dot(q, w, blocks), q, blocks);
   }
   return length;
 }
 
-/** Four vectors are read once for their overlaps and, still in cache, once for the subtraction. */
-function fourAtOnce(q0: usize, stride: usize, w: usize, blocks: i32): void {
+/** x and y lose their parts along four vectors, which are read once for the overlaps and, still in cache, once for the subtraction. */
+function fourFromTwo(q0: usize, stride: usize, x: usize, y: usize): void {
   const q1 = q0 + stride;
   const q2 = q1 + stride;
   const q3 = q2 + stride;
@@ -148,22 +146,55 @@ function fourAtOnce(q0: usize, stride: usize, w: usize, blocks: i32): void {
   let s1 = f64x2.splat(0);
   let s2 = f64x2.splat(0);
   let s3 = f64x2.splat(0);
+  let t0 = f64x2.splat(0);
+  let t1 = f64x2.splat(0);
+  let t2 = f64x2.splat(0);
+  let t3 = f64x2.splat(0);
   for (let i: usize = 0; i < stride; i += 16) {
-    const x = v128.load(w + i);
-    s0 = f64x2.add(s0, f64x2.mul(x, v128.load(q0 + i)));
-    s1 = f64x2.add(s1, f64x2.mul(x, v128.load(q1 + i)));
-    s2 = f64x2.add(s2, f64x2.mul(x, v128.load(q2 + i)));
-    s3 = f64x2.add(s3, f64x2.mul(x, v128.load(q3 + i)));
+    const xi = v128.load(x + i);
+    const yi = v128.load(y + i);
+    let q = v128.load(q0 + i);
+    s0 = f64x2.add(s0, f64x2.mul(xi, q));
+    t0 = f64x2.add(t0, f64x2.mul(yi, q));
+    q = v128.load(q1 + i);
+    s1 = f64x2.add(s1, f64x2.mul(xi, q));
+    t1 = f64x2.add(t1, f64x2.mul(yi, q));
+    q = v128.load(q2 + i);
+    s2 = f64x2.add(s2, f64x2.mul(xi, q));
+    t2 = f64x2.add(t2, f64x2.mul(yi, q));
+    q = v128.load(q3 + i);
+    s3 = f64x2.add(s3, f64x2.mul(xi, q));
+    t3 = f64x2.add(t3, f64x2.mul(yi, q));
   }
-  s0 = f64x2.splat(f64x2.extract_lane(s0, 0) + f64x2.extract_lane(s0, 1));
-  s1 = f64x2.splat(f64x2.extract_lane(s1, 0) + f64x2.extract_lane(s1, 1));
-  s2 = f64x2.splat(f64x2.extract_lane(s2, 0) + f64x2.extract_lane(s2, 1));
-  s3 = f64x2.splat(f64x2.extract_lane(s3, 0) + f64x2.extract_lane(s3, 1));
+  s0 = bothLanes(s0);
+  s1 = bothLanes(s1);
+  s2 = bothLanes(s2);
+  s3 = bothLanes(s3);
+  t0 = bothLanes(t0);
+  t1 = bothLanes(t1);
+  t2 = bothLanes(t2);
+  t3 = bothLanes(t3);
   for (let i: usize = 0; i < stride; i += 16) {
-    const first = f64x2.add(f64x2.mul(s0, v128.load(q0 + i)), f64x2.mul(s1, v128.load(q1 + i)));
-    const second = f64x2.add(f64x2.mul(s2, v128.load(q2 + i)), f64x2.mul(s3, v128.load(q3 + i)));
-    v128.store(w + i, f64x2.sub(v128.load(w + i), f64x2.add(first, second)));
+    let q = v128.load(q0 + i);
+    let xi = f64x2.mul(s0, q);
+    let yi = f64x2.mul(t0, q);
+    q = v128.load(q1 + i);
+    xi = f64x2.add(xi, f64x2.mul(s1, q));
+    yi = f64x2.add(yi, f64x2.mul(t1, q));
+    q = v128.load(q2 + i);
+    xi = f64x2.add(xi, f64x2.mul(s2, q));
+    yi = f64x2.add(yi, f64x2.mul(t2, q));
+    q = v128.load(q3 + i);
+    xi = f64x2.add(xi, f64x2.mul(s3, q));
+    yi = f64x2.add(yi, f64x2.mul(t3, q));
+    v128.store(x + i, f64x2.sub(v128.load(x + i), xi));
+    v128.store(y + i, f64x2.sub(v128.load(y + i), yi));
   }
+}
+
+/** The sum of the two lanes, in both. */
+function bothLanes(x: v128): v128 {
+  return f64x2.splat(f64x2.extract_lane(x, 0) + f64x2.extract_lane(x, 1));
 }
 
 /** Overlaps of `count` basis vectors with x. */
