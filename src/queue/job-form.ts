@@ -46,6 +46,7 @@ const pointSpec = z.strictObject({
   disorder: z.strictObject({ strength: z.number(), seed: z.int(), realisation: count }).nullable(),
   prepared: state,
   detected: state,
+  certify: z.literal(true).optional(),
 });
 
 const resolution = z.union([z.literal('auto'), z.number()]);

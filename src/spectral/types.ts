@@ -12,7 +12,7 @@ export interface SpectralMeasure {
 }
 
 /** Why a number must not be taken at face value. */
-export type Flag = 'doubtful' | 'underresolved' | 'resolution-sensitive';
+export type Flag = 'doubtful' | 'underresolved' | 'resolution-sensitive' | 'uncertified';
 
 export interface PointFields {
   readonly hilbert_dimension: number;

@@ -34,6 +34,8 @@ export interface SweepDocument {
   readonly resolution: { readonly energy: Axis<'auto' | number>; readonly weight: Axis<'auto' | number> };
   readonly budget: Axis<number>;
   readonly detector: { readonly efficiency: Axis<number> };
+  /** accessible dimensions are counted exactly */
+  readonly certify?: true;
   readonly sampling?: { readonly draws: number; readonly seed: number };
 }
 
@@ -84,6 +86,7 @@ export function normalise(raw: unknown, earliest: (all: readonly Refusal[]) => R
     budget: axis(file['budget'], ['budget'], schema.budgetValue),
     detector: { efficiency: axis(detector['efficiency'] ?? 1, ['detector', 'efficiency'], schema.efficiencyValue) },
     ...samplingOf(file['sampling'] as Raw | undefined),
+    ...(file['certify'] === true ? { certify: true } : {}),
   };
 }
 

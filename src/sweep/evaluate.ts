@@ -7,8 +7,10 @@
 import { WindrowError, type ErrorCode } from '../core/errors.js';
 import { findModel } from '../models/registry.js';
 import type { SystemRequest } from '../models/types.js';
+import { certify } from '../spectral/certify.js';
 import { measureCost } from '../spectral/cost.js';
 import { spectralMeasure } from '../spectral/measure.js';
+import { modularCount } from '../spectral/modular-count.js';
 import type { MeasuredPoint } from '../spectral/types.js';
 import { answer } from '../statistics/answer.js';
 import { answerCost } from '../statistics/cost.js';
@@ -52,7 +54,9 @@ function measure(spec: PointSpec, memory: number): MeasuredPoint {
   const request = requestOf(spec);
   const extent = family.extent(request);
   limit(measureCost(extent).bytes, memory, `a Hamiltonian of dimension ${extent.dimension}`);
-  return spectralMeasure(family.build(request));
+  const system = family.build(request);
+  const measured = spectralMeasure(system);
+  return spec.certify === true ? certify(measured, modularCount(family, request, system)) : measured;
 }
 
 function answers(

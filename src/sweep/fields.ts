@@ -69,6 +69,6 @@ export const CELL_FIELDS = [
 
 /** Both records also carry these two. */
 export const FLAG_FIELDS = [
-  field('flags', 'list', '', 'doubtful, underresolved, resolution-sensitive'),
+  field('flags', 'list', '', 'doubtful, underresolved, resolution-sensitive, uncertified'),
   field('flag_reasons', 'list', '', 'one sentence a flag'),
 ] as const;

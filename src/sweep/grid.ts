@@ -22,9 +22,18 @@ function coordinate(value: Json): number | string {
 const isAxis = (axis: SpaceAxis, index: number): boolean => index < 2 || axis.values.length > 1;
 
 /** What is identified and stored of a canonical request. */
-function specOf(model: string, request: SystemRequest): PointSpec {
+function specOf({ model, certify }: SweepDocument, request: SystemRequest): PointSpec {
   const { size, coupling, disorder, prepared, detected } = request;
-  return { model, size, coupling, parameters: request.parameters as PointSpec['parameters'], disorder, prepared, detected };
+  return {
+    model,
+    size,
+    coupling,
+    parameters: request.parameters as PointSpec['parameters'],
+    disorder,
+    prepared,
+    detected,
+    ...(certify === true ? { certify } : {}),
+  };
 }
 
 /**
@@ -44,7 +53,7 @@ export function expandGrid(document: SweepDocument): Grid {
       });
     }
     const place = placeOf(ordinal, space.axes);
-    const spec = specOf(document.model, space.family.canonical(space.requestAt(place)));
+    const spec = specOf(document, space.family.canonical(space.requestAt(place)));
     const coordinates = Object.fromEntries(shownAxes.map(({ axis, index }) => [axis.name, coordinate(axis.values[place[index]])]));
     return { id: pointId(spec), ordinal, spec, coordinates };
   }

@@ -193,6 +193,7 @@ const questionShape = {
   sampling: mapping({ draws: z.int().min(2).max(1_000_000).describe('drawn schedules a cell'), seed: seed.optional() })
     .optional()
     .describe('winding numbers of drawn schedules besides the exact averages'),
+  certify: z.boolean().optional().describe('count accessible dimensions exactly, by modular arithmetic; default false'),
 };
 
 const cache = new Map<string, ReturnType<typeof buildSchema>>();

@@ -21,6 +21,8 @@ export interface PointSpec {
   readonly prepared: StateSpec;
   /** canonical: 'same' only for the return problem */
   readonly detected: StateSpec;
+  /** set where accessible_dimension is to be counted exactly: another way of computing, so another point */
+  readonly certify?: true;
 }
 
 /** A point of a grid: its identity and where it lies on the sweep's axes. */

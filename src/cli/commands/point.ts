@@ -23,6 +23,7 @@ import { runVerb } from '../run-verb.js';
 interface Options {
   readonly model?: string;
   readonly set?: string[];
+  readonly certify?: true;
 }
 
 type Document = { [key: string]: unknown };
@@ -40,6 +41,7 @@ const DOCUMENT_KEYS = new Set([
   'disorder',
   'sampling',
   'detector',
+  'certify',
 ]);
 
 /** What a point is asked when nothing else is said. */
@@ -72,8 +74,8 @@ function override(document: Document, pairs: readonly (readonly [string, unknown
   return changed;
 }
 
-function documentOf(file: string | undefined, { model, set }: Options): Document {
-  const pairs = parsePairs('--set', set ?? []);
+function documentOf(file: string | undefined, { model, set, certify }: Options): Document {
+  const pairs = [...parsePairs('--set', set ?? []), ...(certify === true ? [['certify', true] as const] : [])];
   if (file !== undefined) {
     const read = readSweepFile(file, { allowLarge: true }) as unknown as Document;
     return override(model === undefined ? read : { ...read, model }, pairs);
@@ -163,7 +165,8 @@ export function pointCommand(program: Command, io: Io): void {
       '--set <key=value>',
       'a key of the sweep file or a parameter of the model, such as size=12, as=interaction-ratio, tilt=0.1',
       collect,
-    );
+    )
+    .option('--certify', 'count the accessible dimension exactly, by modular arithmetic');
   computeOptions(command).action(
     runVerb<[string | undefined], Options>(io, {}, async (context, options, file) => {
       const grid = expandGrid(documentFromJson(documentOf(file, options) as Json));
