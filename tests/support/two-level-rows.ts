@@ -3,8 +3,9 @@
  *
  * H = −g σx + (b/2) σz, prepared and detected in the state of σz = +1, measured at a fixed interval τ. Levels ±Ω with
  * Ω = √(g² + b²/4), weights (1 ± (b/2)/Ω)/2, so Σ w² = (1 + b²/(b² + 4g²))/2. For b = 0 the return has S_n = sin²(gτ) cos^{2(n−1)}(gτ)
- * for n ≥ 1 and E[min(n, K)] = 2 − cos^{2(K−1)}(gτ). Elementary; the second is the survival probability of First detected arrival of a
- * quantum walker on an infinite line, Phys. Rev. Lett. 120, 040502 (2018), applied to two levels (from memory).
+ * for n ≥ 1 and E[min(n, K)] = 2 − cos^{2(K−1)}(gτ). Elementary; the second is
+ * a sum over the first-detection probabilities of Quantum walks: the first detected passage time problem, Phys. Rev. E 95, 032141 (2017),
+ * DOI 10.1103/PhysRevE.95.032141 (from memory).
  */
 import type { CellRow } from '../../src/store/types.js';
 import type { CellFields, Question } from '../../src/statistics/types.js';

@@ -118,8 +118,8 @@ describe('point', () => {
   });
 
   it('gives the published variance of the return to a two-level state, 2 cot²(gτ)', async () => {
-    // Discrete-time quantum walk recurrence: Recurrence for discrete time unitary evolutions, Commun. Math. Phys. 320, 543 (2013),
-    // DOI 10.1007/s00220-012-1645-2 (from memory); closed form for two levels.
+    // Large fluctuations of the first detected quantum return time, Phys. Rev. Research 1, 033086 (2019),
+    // DOI 10.1103/PhysRevResearch.1.033086; the formula for two levels from memory.
     const args = ['point', '--model', 'two-level', '--set', 'coupling=1', '--set', 'schedule={family: fixed, interval: 0.3}'];
     const { out } = await runCli([...args, '--format', 'json']);
     const [point] = jsonLines(out) as [Record_];
