@@ -4,6 +4,7 @@ import { dipoleRule } from './configuration-space.js';
 import { localLabels } from './labels.js';
 import { checkOnsite, fieldParameter, geometryParameter, randomParameter, siteEnergies, termAmplitudes, windows } from './lattice.js';
 import { halves, localMoves, repeated } from './local-moves.js';
+import type { LocalTerm } from './local-moves.js';
 import { defineProductFamily } from './product-family.js';
 import type { ProductBasis, SystemRequest } from './types.js';
 
@@ -40,6 +41,14 @@ function basis({ size, coupling, disorder, parameters: { J3, geometry, field, ra
   const fields = siteEnergies(field, random === 'hops' ? null : disorder, size);
   const three = windows(size, 3, geometry);
   const four = coupling === 0 ? [] : windows(size, 4, geometry);
+  // Patterns are drawn one by one: with one factor a stretch, the largest sectors keep the degeneracies of free particles.
+  const groups = (patterns: readonly Move[]): (readonly Move[])[] => (random === 'onsite' ? [patterns] : patterns.map((move) => [move]));
+  const moves = (stretches: typeof three, amplitude: number, patterns: readonly Move[]): LocalTerm[] =>
+    groups(patterns).map((group) => ({
+      windows: stretches,
+      amplitudes: termAmplitudes(amplitude, disorder, random, stretches.length, group[0][0]),
+      moves: group,
+    }));
   return {
     sites: size,
     levels: 3,
@@ -48,17 +57,14 @@ function basis({ size, coupling, disorder, parameters: { J3, geometry, field, ra
       for (let x = 0; x < size; x += 1) energy += fields[x] * (c[x] - 1);
       return energy;
     },
-    connect: localMoves(SPINS, [
-      { windows: three, amplitudes: termAmplitudes(-J3, disorder, random, three.length, 3), moves: THREE },
-      { windows: four, amplitudes: termAmplitudes(-coupling, disorder, random, four.length, 4), moves: FOUR },
-    ]),
+    connect: localMoves(SPINS, [...moves(three, -J3, THREE), ...moves(four, -coupling, FOUR)]),
   };
 }
 
 /**
  * H = −J₃ Σ [S⁺_{x−1} (S⁻_x)² S⁺_{x+1} + h.c.] − J₄ Σ [S⁺_x S⁻_{x+1} S⁻_{x+2} S⁺_{x+3} + h.c.] + Σ h_x S^z_x. Conserves Q = Σ S^z_x and
  * P = Σ x S^z_x (on a ring modulo L); the dimension counts the configurations with those of φ. J₄ = 0 leaves the three-site term alone, also
- * under disorder: strongly fragmented. Values: 0, 1, 2 for S^z = −1, 0, 1.
+ * under disorder: strongly fragmented. Random hops draw an amplitude for every stretch of sites and pair of patterns. Values: 0, 1, 2 for S^z = −1, 0, 1.
  */
 export const dipoleSpinOneChain = defineProductFamily<z.infer<typeof parameters>>({
   name: 'dipole-spin-one-chain',
