@@ -16,8 +16,9 @@ const LOCK = 7_460_913_582_202;
 
 /** On top of what the reader has. `select … for update` asks for the right to update. */
 const WRITER_RIGHTS = [
-  `grant insert on windrow.point, windrow.measure, windrow.question, windrow.cell, windrow.failure, windrow.sweep, windrow.sweep_question,
-     windrow.sweep_point, windrow.follow_up to ${ROLES.writer}`,
+  `grant insert on all tables in schema windrow to ${ROLES.writer}`,
+  `revoke insert on windrow.migration from ${ROLES.writer}`,
+  `alter default privileges in schema windrow grant insert on tables to ${ROLES.writer}`,
   `grant update (state, updated) on windrow.sweep to ${ROLES.writer}`,
   `grant update, delete on windrow.failure to ${ROLES.writer}`,
 ];

@@ -3,7 +3,7 @@ import { createHash } from 'node:crypto';
 import type { MeasuredPoint, PointFields, SpectralMeasure } from '../../src/spectral/types.js';
 import type { CellFields, Question } from '../../src/statistics/types.js';
 import type { CellResult, GridPoint, PointFailure, PointResult, PointSpec, QuestionRecord } from '../../src/sweep/types.js';
-import type { SweepRecord } from '../../src/store/types.js';
+import type { NewSweep } from '../../src/store/types.js';
 
 export const idOf = (...labels: readonly unknown[]): string => createHash('sha256').update(JSON.stringify(labels)).digest('hex');
 
@@ -36,11 +36,7 @@ export const questionRecord = (ordinal: number, label: number | string = ordinal
   } satisfies Question,
 });
 
-export const sweepOf = (
-  name: string,
-  points: number,
-  questions: readonly QuestionRecord[],
-): Omit<SweepRecord, 'state' | 'created' | 'updated'> => ({
+export const sweepOf = (name: string, points: number, questions: readonly QuestionRecord[]): NewSweep => ({
   name,
   digest: idOf('sweep', name, points, questions),
   document: { name, model: 'two-level', 'a "quoted" key': ['\\', "'", 1e-300, 12.5] },

@@ -6,6 +6,7 @@ import type { PointSpec } from '../../sweep/types.js';
 import type { CellQuery, CellRow } from '../types.js';
 import { cellReader, pointReader } from './columns.js';
 import { integers } from './encoding.js';
+import { ASKED } from './follow-ups.js';
 import { requireSweep } from './sweeps.js';
 
 /** Rows fetched at once: enough that round trips do not count, few enough that memory does not. */
@@ -21,7 +22,7 @@ const DECLARE = `
     ${cellReader.list('c')}, ${pointReader.list('m')}
   from windrow.sweep_point sp
   join windrow.point p on p.id = sp.point_id
-  join windrow.sweep_question sq on sq.sweep = sp.sweep
+  join (${ASKED}) sq on sq.sweep = sp.sweep
   left join windrow.measure m on m.point_id = sp.point_id
   left join windrow.cell c on c.point_id = sp.point_id and c.question_id = sq.question_id
   left join windrow.failure f on f.point_id = sp.point_id
@@ -92,7 +93,7 @@ function sharedOf(row: Row): SharedOfPoint {
 
 async function readQuestions(client: ClientBase, sweep: string): Promise<ReadonlyMap<number, Question>> {
   const { rows } = await client.query<{ ordinal: number; question: string }>(
-    'select sq.ordinal, q.question from windrow.sweep_question sq join windrow.question q on q.id = sq.question_id where sq.sweep = $1',
+    `select sq.ordinal, q.question from (${ASKED}) sq join windrow.question q on q.id = sq.question_id where sq.sweep = $1`,
     [sweep],
   );
   return new Map(rows.map(({ ordinal, question }) => [ordinal, JSON.parse(question) as Question]));

@@ -10,7 +10,17 @@ import { WindrowError } from '../../core/errors.js';
 import { digest } from '../../core/json.js';
 import { grantRoles } from '../grant.js';
 import { migrate, refuseNewer, schemaState } from '../migrate.js';
-import type { CellQuery, CellRow, MissingPoint, NewSweep, ResultStore, SaveBatch, StoreRoles, SweepProgress, SweepRecord } from '../types.js';
+import type {
+  CellQuery,
+  CellRow,
+  MissingPoint,
+  NewSweep,
+  ResultStore,
+  SaveBatch,
+  StoreRoles,
+  SweepProgress,
+  SweepRecord,
+} from '../types.js';
 import type { MeasuredPoint } from '../../spectral/types.js';
 import type { GridPoint, QuestionRecord } from '../../sweep/types.js';
 import { readCells } from './cells.js';

@@ -3,12 +3,12 @@ import type { ClientBase } from 'pg';
 import { WindrowError } from '../../core/errors.js';
 import type { Json } from '../../core/json.js';
 import type { GridPoint, QuestionRecord } from '../../sweep/types.js';
-import type { MissingPoint, SweepProgress, SweepRecord } from '../types.js';
+import type { MissingPoint, NewSweep, SweepProgress, SweepRecord } from '../types.js';
 import { id, ids } from './encoding.js';
 import { idColumn, inserter, integerColumn, jsonColumn, sortedBy, textColumn } from './insert.js';
 import { addPoints } from './save.js';
 
-const insertQuestions = inserter<QuestionRecord>('windrow.question', [
+export const insertQuestions = inserter<Omit<QuestionRecord, 'ordinal'>>('windrow.question', [
   idColumn('id', (question) => question.id),
   jsonColumn('question', ({ question }) => question),
 ]);
@@ -27,7 +27,7 @@ const insertSweepPoints = inserter<GridPoint & { readonly sweep: string }>('wind
 ]);
 
 /** @throws sweep.differs */
-export async function registerSweep(client: ClientBase, sweep: Omit<SweepRecord, 'state' | 'created' | 'updated'>): Promise<SweepRecord> {
+export async function registerSweep(client: ClientBase, sweep: NewSweep): Promise<SweepRecord> {
   const { name, digest, document, methodVersion, points, questions } = sweep;
   await insertQuestions(
     client,
@@ -74,17 +74,19 @@ interface SweepRow {
   readonly created: string;
   readonly updated: string;
   readonly questions: string;
+  readonly follow_ups: string;
 }
+
+/** The questions of sweep `s` in one of the two tables that name them, as JSON. */
+const questionsIn = (table: string): string => `coalesce((
+       select jsonb_agg(jsonb_build_object('id', encode(q.id, 'hex'), 'ordinal', t.ordinal, 'question', q.question) order by t.ordinal)
+       from ${table} t join windrow.question q on q.id = t.question_id where t.sweep = s.name), '[]')`;
 
 /** Sweeps by age, or the one of that name. */
 export async function readSweeps(client: ClientBase, name: string | null = null): Promise<readonly SweepRecord[]> {
   const { rows } = await client.query<SweepRow>(
-    `select s.*, coalesce(q.questions, '[]') as questions
-     from windrow.sweep s left join lateral (
-       select jsonb_agg(jsonb_build_object('id', encode(q.id, 'hex'), 'ordinal', sq.ordinal, 'question', q.question) order by sq.ordinal)
-         as questions
-       from windrow.sweep_question sq join windrow.question q on q.id = sq.question_id where sq.sweep = s.name
-     ) q on true
+    `select s.*, ${questionsIn('windrow.sweep_question')} as questions, ${questionsIn('windrow.follow_up')} as follow_ups
+     from windrow.sweep s
      where $1::text is null or s.name = $1 order by s.created, s.name`,
     [name],
   );
@@ -95,6 +97,7 @@ export async function readSweeps(client: ClientBase, name: string | null = null)
     methodVersion: row.method_version,
     points: row.points,
     questions: JSON.parse(row.questions) as QuestionRecord[],
+    followUps: JSON.parse(row.follow_ups) as QuestionRecord[],
     state: row.state,
     created: row.created,
     updated: row.updated,
