@@ -68,7 +68,6 @@ export const CATALOGUE = {
   'analysis.axis': input('an axis, or a value on it, that the sweep does not have'),
   // command line
   'cli.usage': input('a command line that cannot be understood'),
-  'cli.interrupted': failure('interrupted by the user'),
   'report.unwritable': failure('a figure or export that cannot be written'),
 } as const satisfies Record<string, CatalogueEntry>;
 
