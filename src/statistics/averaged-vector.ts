@@ -1,10 +1,7 @@
 /** The averaged monitored step in WebAssembly: lays out what src/linalg/wasm/assembly/averaged.ts works on. */
-import { padded, rowStart, triangleLength } from '../linalg/wasm/layout.js';
+import { complexPlace as place, padded, triangleLength } from '../linalg/wasm/layout.js';
 import { addresses, takeWorkspace } from '../linalg/wasm/workspace.js';
 import { preparedInUnits, type OpenIteration } from './averaged-iteration.js';
-
-/** Where the real part of element (i, j) stands; its imaginary part is two further on. */
-const place = (i: number, j: number): number => 2 * rowStart(i) + 4 * (j >> 1) + (j & 1);
 
 /** Levels go in the order of the measure; only the lower triangle and the squares on the diagonal are kept. */
 export const vectorIteration: OpenIteration = (measure, distribution, kappa) => {

@@ -3,7 +3,7 @@
  * both triangles are kept, so that every row begins on 32 bytes and no loop has a remainder. Missing rows and columns are zero.
  */
 import { forEachElement } from '../elements.js';
-import type { HermitianMatrix } from '../matrix.js';
+import type { HermitianMatrix, StateVector } from '../matrix.js';
 
 /** A length rounded up to whole blocks of four. */
 export const padded = (length: number): number => Math.ceil(length / 4) * 4;
@@ -55,3 +55,40 @@ export function reverse(plane: Float64Array, pivot: number, target: Float64Array
   target[n - 1 - pivot] = plane[0];
   target[n - 1] = plane[pivot];
 }
+
+/**
+ * Where the real part of complex element (i, j) of a triangle stands: complex triangles have the same rows in records of two neighbours, real
+ * parts before imaginary ones. The imaginary part is two further on.
+ */
+export const complexPlace = (i: number, j: number): number => 2 * rowStart(i) + vectorPlace(j);
+
+/** The same for element j of a complex vector. */
+export const vectorPlace = (j: number): number => 4 * (j >> 1) + (j & 1);
+
+/** `packReversed` for complex matrices, or real ones that are taken as complex. */
+export function packReversedComplex(matrix: HermitianMatrix, scale: number, pivot: number, target: Float64Array): void {
+  const n = matrix.dimension;
+  target.fill(0);
+  forEachElement(matrix, (row, column, re, im) => {
+    const i = reversed(row, pivot, n);
+    const j = reversed(column, pivot, n);
+    if (j >= padded(i + 1)) return;
+    const at = complexPlace(i, j);
+    target[at] = re * scale;
+    // The diagonal of a Hermitian matrix is real; rounding of foreign input must not enter.
+    if (i !== j) target[at + 2] = im * scale;
+  });
+}
+
+/** Writes a vector in the order of `packReversedComplex`. */
+export function reverseComplex(vector: StateVector, pivot: number, target: Float64Array): void {
+  const n = vector.re.length;
+  target.fill(0);
+  for (let i = 0; i < n; i += 1) {
+    const at = vectorPlace(reversed(i, pivot, n));
+    target[at] = vector.re[i];
+    target[at + 2] = vector.im === null ? 0 : vector.im[i];
+  }
+}
+
+const reversed = (i: number, pivot: number, n: number): number => (i === pivot ? n - 1 : i === 0 ? n - 1 - pivot : n - 1 - i);

@@ -1,10 +1,11 @@
 /**
  * The WebAssembly kernel: the reference kernel's methods on 128-bit vectors. What it does not have, and what lies beyond its addresses
- * (real matrices of more than 32,000 rows), is done by the reference kernel; which one does it depends on the arguments alone.
+ * (matrices of more than 32,000 rows, 23,000 complex ones), is done by the reference kernel; which one does it depends on the arguments alone.
  */
 import { isComplexPair } from '../apply.js';
 import type { SpectralKernel } from '../kernel.js';
 import { referenceKernel } from '../reference/reference-kernel.js';
+import { householderComplex, householderComplexBytes } from './householder-complex.js';
 import { householderReal, householderRealBytes } from './householder-real.js';
 import { lanczos, lanczosBytes } from './lanczos.js';
 import { tridiagonalEigen, tridiagonalEigenBytes } from './tridiagonal-ql.js';
@@ -21,8 +22,11 @@ const WHOLE_TO = 8000;
 export const wasmKernel: SpectralKernel = {
   name: 'simd',
   householder(matrix, start, carried) {
-    const here = !isComplexPair(matrix, start) && fits(householderRealBytes(matrix.dimension));
-    return here ? householderReal(matrix, start, carried) : referenceKernel.householder(matrix, start, carried);
+    const complex = isComplexPair(matrix, start);
+    if (!fits((complex ? householderComplexBytes : householderRealBytes)(matrix.dimension))) {
+      return referenceKernel.householder(matrix, start, carried);
+    }
+    return (complex ? householderComplex : householderReal)(matrix, start, carried);
   },
   lanczos(matrix, start, carried, maximumSteps) {
     const here =

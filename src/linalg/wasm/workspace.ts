@@ -22,6 +22,18 @@ export interface KernelFunctions {
     planes: number,
     breakdown: number,
   ) => number;
+  readonly householderComplex: (
+    a: number,
+    n: number,
+    u: number,
+    w: number,
+    v: number,
+    p: number,
+    d: number,
+    e: number,
+    carried: number,
+    breakdown: number,
+  ) => number;
   readonly tridiagonalQl: (
     n: number,
     d: number,

@@ -105,7 +105,7 @@ function updateAndMultiply(a: usize, m: i32, u: usize, w: usize, v: usize, p: us
 }
 
 /** The two rows at byte offset i against the columns before the diagonal block. */
-function twoRows(r0: usize, stride: usize, end: usize, i: usize, u: usize, w: usize, v: usize, p: usize): void {
+export function twoRows(r0: usize, stride: usize, end: usize, i: usize, u: usize, w: usize, v: usize, p: usize): void {
   const r1 = r0 + stride;
   const u0 = v128.load64_splat(u + i);
   const u1 = v128.load64_splat(u + i, 8);

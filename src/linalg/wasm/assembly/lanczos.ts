@@ -82,7 +82,7 @@ export function lanczosSteps(
 }
 
 /** w = Hq */
-function multiply(n: i32, rows: usize, columns: usize, values: usize, q: usize, w: usize): void {
+export function multiply(n: i32, rows: usize, columns: usize, values: usize, q: usize, w: usize): void {
   let k = <usize>i32.load(rows);
   for (let i: usize = 0; i < <usize>n; i++) {
     const end = <usize>i32.load(rows + (i << 2), 4);
@@ -93,7 +93,7 @@ function multiply(n: i32, rows: usize, columns: usize, values: usize, q: usize, 
 }
 
 /** Replaces ω of vector k − 1 by that of vector k + 1 and returns the largest |ω| of it. */
-function estimate(k: i32, alpha: usize, beta: usize, length: f64, now: usize, next: usize, left: f64): f64 {
+export function estimate(k: i32, alpha: usize, beta: usize, length: f64, now: usize, next: usize, left: f64): f64 {
   f64.store(now + ((<usize>k) << 3), 1);
   const a = f64.load(alpha + ((<usize>k) << 3));
   const b = k > 0 ? f64.load(beta + ((<usize>k - 1) << 3)) : 0;
