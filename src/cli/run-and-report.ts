@@ -14,8 +14,8 @@ import { print } from './print.js';
 import { progressView } from './progress.js';
 import { readStoredSweep } from './stored-sweep.js';
 
-/** Panels that a terminal shows; the figures have all. */
-const SHOWN_MAPS = 4;
+/** Maps that the report puts on the terminal; schedules often differ little there, and the figures have all panels. */
+const SHOWN_MAPS = 1;
 
 export interface RunOptions {
   readonly retryFailed?: boolean;
@@ -99,7 +99,7 @@ async function reportText(context: Context, { view, figures }: Report, folder: s
   const name = view.sweep.grid.name;
   return [
     await mapText({ ...view, maps: shown }, context),
-    ...(rest > 0 ? [`${rest} more: \`windrow map ${name} --question …\``] : []),
+    ...(rest > 0 ? [`The other ${rest} in the figures, and by \`windrow map ${name}\`.`] : []),
     ...(view.boundaries.length === 0
       ? []
       : [`Boundary along ${view.sweep.labels.axisTitle(view.axes.x)}; ${view.choice.words}\n\n${boundaryOverview(view.boundaries)}`]),
