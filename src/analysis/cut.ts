@@ -11,6 +11,11 @@ function same(a: number | string | undefined, b: number | string): boolean {
   return String(a) === String(b);
 }
 
+/** Whether coordinates lie at the given values of some axes. */
+export function samePlace(coordinates: Coordinates, at: Coordinates): boolean {
+  return Object.entries(at).every(([axis, value]) => same(coordinates[axis], value));
+}
+
 /**
  * Samples at given values of some axes.
  * @throws WindrowError `analysis.axis` for an axis the sweep has not, or a value that is not on it

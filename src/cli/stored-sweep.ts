@@ -50,6 +50,18 @@ export async function readStoredSweep(store: ResultStore, name: string): Promise
   return { record, grid, labels: sweepLabels(grid, findModel(grid.model)), notes: notesOf(grid) };
 }
 
+/** @throws WindrowError `cli.usage` for a question that was neither swept nor followed up */
+export function requireQuestions({ record }: Pick<StoredSweep, 'record'>, questions: readonly number[]): void {
+  const last = record.questions.length + record.followUps.length - 1;
+  const foreign = questions.find((ordinal) => ordinal > last);
+  if (foreign === undefined) return;
+  throw new WindrowError('cli.usage', 'no such question in the sweep', {
+    where: '--question',
+    found: String(foreign),
+    allowed: `0 to ${last}, as \`windrow status ${record.name}\` lists them`,
+  });
+}
+
 export interface Selection {
   /** Numbers of questions; all when absent. */
   readonly questions?: readonly number[] | undefined;
@@ -58,7 +70,7 @@ export interface Selection {
 
 /**
  * Samples of one quantity, streamed from the store.
- * @throws WindrowError `cli.usage` for a question the sweep has not, `analysis.axis` for a place that is not on the grid
+ * @throws WindrowError `analysis.axis` for a place that is not on the grid
  */
 export async function readSamples(
   store: ResultStore,
@@ -66,15 +78,6 @@ export async function readSamples(
   quantity: Quantity,
   { questions, at = {} }: Selection,
 ): Promise<Sample[]> {
-  const last = sweep.grid.questions.length - 1;
-  const foreign = questions?.find((ordinal) => ordinal > last);
-  if (foreign !== undefined) {
-    throw new WindrowError('cli.usage', 'no such question in the sweep', {
-      where: '--question',
-      found: String(foreign),
-      allowed: `0 to ${last}, as \`windrow status ${sweep.grid.name}\` lists them`,
-    });
-  }
   const rows = store.cells({ sweep: sweep.grid.name, ...(questions === undefined ? {} : { questions }) });
   return samplesAt(await collectSamples(rows, quantity), at);
 }

@@ -16,11 +16,13 @@ export function readSweepFile(path: string, options: Pick<ReadOptions, 'allowLar
   return readSweep(readBytes(path, FILE_LIMIT), {
     ...options,
     file: path,
-    loadIntervals: (name) => {
-      const file = resolve(folder, name);
-      return parseIntervals(decode(readBytes(file, INTERVALS_FILE_LIMIT), file, INTERVALS_FILE_LIMIT), file);
-    },
+    loadIntervals: (name) => readIntervalsFile(resolve(folder, name)),
   });
+}
+
+/** Measured intervals of a file. @throws WindrowError sweep.file, sweep.value */
+export function readIntervalsFile(file: string): readonly number[] {
+  return parseIntervals(decode(readBytes(file, INTERVALS_FILE_LIMIT), file, INTERVALS_FILE_LIMIT), file);
 }
 
 const REASONS: Readonly<Record<string, string>> = {

@@ -98,6 +98,60 @@ export function resultStoreSuite(name: string, prepare: () => Promise<StoreUnder
       });
     });
 
+    describe('follow-ups', () => {
+      const asked = (record: { id: string; question: unknown }) =>
+        ({ id: record.id, question: record.question }) as ReturnType<typeof questionRecord>;
+
+      it('number on where the questions of the sweep end, once each, and keep the numbers of what was swept', async () => {
+        const { asked: swept } = await sweepWith('followed', 1, 2);
+        const later = [questionRecord(7, 'followed later'), questionRecord(8, 'followed too')];
+        const records = await store.followUp('followed', [asked(later[0]), asked(swept[1]), asked(later[1]), asked(later[0])]);
+        expect(records.map(({ ordinal }) => ordinal)).toEqual([2, 1, 3, 2]);
+        expect(records.map(({ id }) => id)).toEqual([later[0].id, swept[1].id, later[1].id, later[0].id]);
+        expect((await other.followUp('followed', [asked(later[1])]))[0].ordinal).toBe(3);
+        const record = await other.findSweep('followed');
+        expect(record?.questions).toEqual(swept);
+        expect(record?.followUps).toEqual([
+          { ...later[0], ordinal: 2 },
+          { ...later[1], ordinal: 3 },
+        ]);
+      });
+
+      it('give one number to a question that many processes ask at once', async () => {
+        await sweepWith('asked at once', 1, 1);
+        const ask = (i: number) => (i % 2 ? store : other).followUp('asked at once', [asked(questionRecord(0, `at once ${i % 3}`))]);
+        const records = (await Promise.all(Array.from({ length: 12 }, (_, i) => ask(i)))).flat();
+        expect(new Map(records.map(({ id, ordinal }) => [ordinal, id])).size).toBe(3);
+        expect(new Set(records.map(({ id, ordinal }) => `${id} ${ordinal}`)).size).toBe(3);
+        expect([...new Set(records.map(({ ordinal }) => ordinal))].sort()).toEqual([1, 2, 3]);
+      });
+
+      it('are shown among the cells, and leave enrolment and progress as they were', async () => {
+        const { grid, asked: swept } = await sweepWith('beside', 2, 1);
+        const [later] = await store.followUp('beside', [asked(questionRecord(0, 'beside later'))]);
+        await store.save({
+          points: grid.map((point) => pointResult(point)),
+          cells: grid.map((point) => cellResult(point, swept[0])),
+          failures: [],
+        });
+        await store.save({ points: [], cells: [cellResult(grid[1], later)], failures: [] });
+        expect(await store.enrol('beside', grid)).toEqual([]);
+        expect(await store.progress('beside')).toMatchObject({ cells: 2, storedCells: 2, storedPoints: 2, failedPoints: 0 });
+        const rows = await rowsOf('beside');
+        expect(rows.map(({ ordinal, questionOrdinal, fields }) => [ordinal, questionOrdinal, fields !== null])).toEqual([
+          [0, 0, true],
+          [0, 1, false],
+          [1, 0, true],
+          [1, 1, true],
+        ]);
+        expect((await rowsOf('beside', [1])).map(({ question }) => question)).toEqual([later.question, later.question]);
+      });
+
+      it('are refused for a sweep that does not exist', async () => {
+        await expect(store.followUp('nobody', [])).rejects.toMatchObject({ code: 'sweep.unknown' });
+      });
+    });
+
     describe('enrolment', () => {
       it('tells what is missing, in the order given, and again when asked again', async () => {
         const { grid, asked, missing } = await sweepWith('missing', 3, 2);

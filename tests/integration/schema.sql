@@ -41,6 +41,16 @@ create table windrow.failure (
   constraint failure_point_id_fkey FOREIGN KEY (point_id) REFERENCES point(id)
 );
 
+create table windrow.follow_up (
+  sweep text not null,
+  ordinal integer not null,
+  question_id bytea not null,
+  constraint follow_up_pkey PRIMARY KEY (sweep, ordinal),
+  constraint follow_up_question_id_fkey FOREIGN KEY (question_id) REFERENCES question(id),
+  constraint follow_up_sweep_fkey FOREIGN KEY (sweep) REFERENCES sweep(name),
+  constraint follow_up_sweep_question_id_key UNIQUE (sweep, question_id)
+);
+
 create table windrow.measure (
   point_id bytea not null,
   energies double precision[] not null,

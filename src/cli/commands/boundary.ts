@@ -12,15 +12,15 @@ import {
   boundaryTable,
 } from '../boundary-options.js';
 import { openStore } from '../compose.js';
-import { EXIT, type Io } from '../context.js';
-import { collect, parsePlace, parseQuestions, storeOption, verb } from '../options.js';
+import type { Io } from '../context.js';
+import { followedQuestions, type FollowUpOptions, followUpOptions } from '../follow-up-options.js';
+import { collect, parsePlace, storeOption, verb } from '../options.js';
 import { print } from '../print.js';
 import { runVerb } from '../run-verb.js';
 import { readSamples, readStoredSweep } from '../stored-sweep.js';
 
-interface Options extends BoundaryOptions {
+interface Options extends BoundaryOptions, FollowUpOptions {
   readonly along?: string;
-  readonly question?: string;
   readonly at?: string[];
 }
 
@@ -30,14 +30,15 @@ export function boundaryCommand(program: Command, io: Io): void {
     .option('--along <axis>', 'numeric axis to search along; the coupling where it varies')
     .option('--question <numbers>', 'only these questions, such as 0,2')
     .option('--at <axis=value>', 'only this value of an axis; may be repeated', collect);
-  storeOption(boundaryOptions(command)).action(
+  storeOption(followUpOptions(boundaryOptions(command))).action(
     runVerb<[string], Options>(io, {}, async (context, options, name) => {
       const choice = boundaryChoice(options);
-      const selection = { questions: parseQuestions(options.question), at: parsePlace('--at', options.at) };
+      const at = parsePlace('--at', options.at);
       const store = await openStore(context);
       const sweep = await readStoredSweep(store, name);
-      const samples = await readSamples(store, sweep, choice.quantity, selection);
-      const along = options.along ?? mapAxes(sweep.grid.axes, Object.keys(selection.at)).x;
+      const { questions, status } = await followedQuestions(context, store, sweep, options, at);
+      const samples = await readSamples(store, sweep, choice.quantity, { questions, at });
+      const along = options.along ?? mapAxes(sweep.grid.axes, Object.keys(at)).x;
       requireAxis(samples, along);
       const boundaries = boundariesOf(samples, choice, along);
       await print(context, {
@@ -45,7 +46,7 @@ export function boundaryCommand(program: Command, io: Io): void {
         json: () => boundaries.map(boundaryRow),
         csv: () => ({ columns: BOUNDARY_COLUMNS, rows: boundaries.map(boundaryRow) }),
       });
-      return EXIT.done;
+      return status;
     }),
   );
 }

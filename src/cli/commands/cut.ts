@@ -9,17 +9,17 @@ import { coordinatesText, formatNumber, scheduleText } from '../../report/format
 import { quantityTitle } from '../../report/labels.js';
 import { renderTable } from '../../report/table.js';
 import { openStore } from '../compose.js';
-import { EXIT, type Io, say } from '../context.js';
-import { collect, parsePlace, parseQuestions, storeOption, verb } from '../options.js';
+import { type Io, say } from '../context.js';
+import { followedQuestions, type FollowUpOptions, followUpOptions } from '../follow-up-options.js';
+import { collect, parsePlace, storeOption, verb } from '../options.js';
 import { print } from '../print.js';
 import { runVerb } from '../run-verb.js';
 import { readSamples, readStoredSweep } from '../stored-sweep.js';
 
-interface Options {
+interface Options extends FollowUpOptions {
   readonly field: string;
   readonly along?: string;
   readonly at?: string[];
-  readonly question?: string;
   readonly figures?: string;
 }
 
@@ -73,14 +73,15 @@ export function cutCommand(program: Command, io: Io): void {
     .option('--at <axis=value>', 'only this value of another axis, such as size=12; may be repeated', collect)
     .option('--question <numbers>', 'only these questions, such as 0,2')
     .option('--figures <folder>', 'also write the figure there, as SVG and PNG');
-  storeOption(command).action(
+  storeOption(followUpOptions(command)).action(
     runVerb<[string], Options>(io, {}, async (context, options, name) => {
       const quantity = findQuantity(options.field);
       const at = parsePlace('--at', options.at);
       const store = await openStore(context);
       const sweep = await readStoredSweep(store, name);
       const along = options.along ?? mapAxes(sweep.grid.axes, Object.keys(at)).x;
-      const curves = curvesOf(await readSamples(store, sweep, quantity, { questions: parseQuestions(options.question), at }), along);
+      const { questions, status } = await followedQuestions(context, store, sweep, options, at);
+      const curves = curvesOf(await readSamples(store, sweep, quantity, { questions, at }), along);
       await print(context, {
         table: () => cutText(curves, along, quantity),
         json: () => cutRows(curves, along, quantity).rows,
@@ -92,7 +93,7 @@ export function cutCommand(program: Command, io: Io): void {
         const file = `cut-${quantity.name.replaceAll('_', '-')}`;
         for (const path of await writeFigure(spec, options.figures, file)) say(context, `wrote ${path}`);
       }
-      return EXIT.done;
+      return status;
     }),
   );
 }

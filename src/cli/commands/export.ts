@@ -10,15 +10,15 @@ import { formatNumber } from '../../report/format.js';
 import { renderTable } from '../../report/table.js';
 import type { CellRow } from '../../store/types.js';
 import { openStore } from '../compose.js';
-import { EXIT, type Format, type Io, say } from '../context.js';
-import { parseQuestions, storeOption, verb } from '../options.js';
+import { type Format, type Io, say } from '../context.js';
+import { followedQuestions, type FollowUpOptions, followUpOptions } from '../follow-up-options.js';
+import { storeOption, verb } from '../options.js';
 import { endOf, writeText } from '../print.js';
 import { runVerb } from '../run-verb.js';
-import { findStoredSweep } from '../stored-sweep.js';
+import { readStoredSweep } from '../stored-sweep.js';
 
-interface Options {
+interface Options extends FollowUpOptions {
   readonly output?: string;
-  readonly question?: string;
 }
 
 async function* records(rows: AsyncIterable<CellRow>, sweep: string): AsyncIterable<FlatRecord> {
@@ -79,18 +79,17 @@ export function exportCommand(program: Command, io: Io): void {
     .argument('<name>', 'name of the sweep')
     .option('--output <file>', 'write there instead of to stdout')
     .option('--question <numbers>', 'only these questions, such as 0,2');
-  storeOption(command).action(
+  storeOption(followUpOptions(command)).action(
     runVerb<[string], Options>(io, { format: 'csv' }, async (context, options, name) => {
-      const questions = parseQuestions(options.question);
       const store = await openStore(context);
-      await findStoredSweep(store, name);
+      const { questions, status } = await followedQuestions(context, store, await readStoredSweep(store, name), options);
       const rows = records(store.cells({ sweep: name, ...(questions === undefined ? {} : { questions }) }), name);
       if (options.output === undefined) await write(context.format, rows, context.out);
       else {
         await writeFileOf(options.output, (out) => write(context.format, rows, out));
         say(context, `wrote ${options.output}`);
       }
-      return EXIT.done;
+      return status;
     }),
   );
 }

@@ -4,18 +4,18 @@ import { mapAxes } from '../../analysis/map-axes.js';
 import { findQuantity } from '../../analysis/quantities.js';
 import { boundaryChoice, boundaryOptions, type BoundaryOptions } from '../boundary-options.js';
 import { openStore } from '../compose.js';
-import { EXIT, type Io, say } from '../context.js';
+import { type Io, say } from '../context.js';
+import { followedQuestions, type FollowUpOptions, followUpOptions } from '../follow-up-options.js';
 import { mapDocument, mapRows, mapText, readMapView, writeMapFigures } from '../map-view.js';
-import { collect, parsePlace, parseQuestions, storeOption, verb } from '../options.js';
+import { collect, parsePlace, storeOption, verb } from '../options.js';
 import { print } from '../print.js';
 import { runVerb } from '../run-verb.js';
 import { readStoredSweep } from '../stored-sweep.js';
 
-interface MapOptions extends BoundaryOptions {
+interface MapOptions extends BoundaryOptions, FollowUpOptions {
   readonly field: string;
   readonly x?: string;
   readonly y?: string;
-  readonly question?: string;
   readonly at?: string[];
   readonly figures?: string;
 }
@@ -33,15 +33,16 @@ export function mapCommand(program: Command, io: Io): void {
     .option('--question <numbers>', 'only these questions, such as 0,2')
     .option('--at <axis=value>', 'only this value of an axis; may be repeated', collect)
     .option('--figures <folder>', 'also write the phase diagrams there, as SVG and PNG');
-  storeOption(boundaryOptions(command)).action(
+  storeOption(followUpOptions(boundaryOptions(command))).action(
     runVerb<[string], MapOptions>(io, {}, async (context, options, name) => {
       const quantity = findQuantity(options.field);
       const choice = boundaryChoice(options);
-      const selection = { questions: parseQuestions(options.question), at: parsePlace('--at', options.at) };
+      const at = parsePlace('--at', options.at);
       const store = await openStore(context);
       const sweep = await readStoredSweep(store, name);
-      const chosen = mapAxes(sweep.grid.axes, Object.keys(selection.at));
-      const view = await readMapView(store, sweep, quantity, choice, { ...chosen, ...pick(options) }, selection);
+      const { questions, status } = await followedQuestions(context, store, sweep, options, at);
+      const chosen = mapAxes(sweep.grid.axes, Object.keys(at));
+      const view = await readMapView(store, sweep, quantity, choice, { ...chosen, ...pick(options) }, { questions, at });
       await print(context, {
         table: () => mapText(view, context),
         json: () => mapDocument(view),
@@ -50,7 +51,7 @@ export function mapCommand(program: Command, io: Io): void {
       if (options.figures !== undefined) {
         for (const path of await writeMapFigures(view, options.figures)) say(context, `wrote ${path}`);
       }
-      return EXIT.done;
+      return status;
     }),
   );
 }

@@ -87,16 +87,20 @@ function detailText({ record, cells, progress }: Entry): string {
     ['updated', record.updated],
     ['method', record.methodVersion],
   ]);
-  const questions = renderTable(record.questions, [
-    { title: 'question', value: ({ ordinal }) => String(ordinal), align: 'right' },
-    { title: 'schedule', value: ({ question }) => scheduleText(question.schedule) },
-    { title: 'budget', value: ({ question }) => formatCount(question.budget), align: 'right' },
-    {
-      title: 'resolution (energy, weight)',
-      value: ({ question }) => `${resolution(question.resolution.energy)}, ${resolution(question.resolution.weight)}`,
-    },
-    { title: 'efficiency', value: ({ question }) => formatNumber(question.detector.efficiency), align: 'right' },
-  ]);
+  const questions = renderTable(
+    [...record.questions, ...record.followUps],
+    [
+      { title: 'question', value: ({ ordinal }) => String(ordinal), align: 'right' },
+      { title: 'schedule', value: ({ question }) => scheduleText(question.schedule) },
+      { title: 'budget', value: ({ question }) => formatCount(question.budget), align: 'right' },
+      {
+        title: 'resolution (energy, weight)',
+        value: ({ question }) => `${resolution(question.resolution.energy)}, ${resolution(question.resolution.weight)}`,
+      },
+      { title: 'efficiency', value: ({ question }) => formatNumber(question.detector.efficiency), align: 'right' },
+      { title: 'asked', value: ({ ordinal }) => (ordinal < record.questions.length ? 'swept' : 'followed up') },
+    ],
+  );
   return [pairs, questions, ...(progress.failures.length === 0 ? [] : [failureTable(progress.failures)])].join('\n\n');
 }
 
@@ -125,6 +129,7 @@ export function statusCommand(program: Command, io: Io): void {
         json: () => ({
           ...rowOf(entry),
           questions: entry.record.questions as unknown as Json,
+          follow_ups: entry.record.followUps as unknown as Json,
           failures: entry.progress.failures as unknown as Json,
         }),
         csv: () => ({ columns: COLUMNS, rows: [rowOf(entry)] }),
