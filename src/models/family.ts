@@ -13,7 +13,7 @@ import { checkCommon } from './request.js';
 import { refusal } from './refusal.js';
 import { canonicalState, resolveState } from './states.js';
 import type { Label, StateSpace, Term } from './states.js';
-import type { ModelFamily, ProductSpace, StateSpec, System, SystemRequest } from './types.js';
+import type { ModelFamily, StatedSpace, StateSpec, System, SystemRequest } from './types.js';
 
 type QuenchReader<P> = ReturnType<typeof quenches<P>>;
 
@@ -79,9 +79,9 @@ export function defineFamily<P>(definition: FamilyDefinition<P>): ModelFamily<P>
     const detected = request.detected === 'same' ? prepared : resolveState(space, request.detected, 'detect');
     return { prepared, detected };
   };
-  const productSpace = (request: SystemRequest<P>, scope: 'conserved' | 'whole'): ProductSpace => {
-    const like = scope === 'whole' ? null : labelsOf(states(request).detected);
-    return { basis: definition.basis!(request), space: definition.space!(request, like) };
+  const productSpace = (request: SystemRequest<P>, scope: 'conserved' | 'whole'): StatedSpace => {
+    const support = labelsOf(states(request).detected);
+    return { basis: definition.basis!(request), space: definition.space!(request, scope === 'whole' ? null : support), support };
   };
   return {
     ...definition,

@@ -115,7 +115,7 @@ export interface ModelFamily<P = unknown> {
    * allows at that size
    * @throws WindrowError point.too-large where the numbering itself does not fit into memory, and what `check` throws
    */
-  productSpace?(request: SystemRequest<P>, scope: 'conserved' | 'whole'): ProductSpace;
+  productSpace?(request: SystemRequest<P>, scope: 'conserved' | 'whole'): StatedSpace;
 }
 
 /** One small integer a site: an occupation, a local level. */
@@ -155,6 +155,12 @@ export interface ConfigurationSpace {
 export interface ProductSpace {
   readonly basis: ProductBasis;
   readonly space: ConfigurationSpace;
+}
+
+/** The same with the state that is detected. */
+export interface StatedSpace extends ProductSpace {
+  /** configurations of φ */
+  readonly support: readonly (readonly number[])[];
 }
 
 export interface Extent {
