@@ -84,7 +84,7 @@ export async function ownPostgres({ access = '', settings = {} }: OwnPostgresOpt
   /** @returns whether it came up */
   const start = async (): Promise<boolean> => {
     const started = await startPostmaster(postgres, data, log, own);
-    while ((await readPostmaster(data.path))?.ready !== true)
+    while ((await readPostmaster(data.path))?.status !== 'ready')
       if ((await Promise.race([started.ended, sleep(20)])) === 'ended') return false;
     started.release();
     return true;

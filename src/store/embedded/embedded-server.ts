@@ -18,7 +18,17 @@ import { isConnectionLoss, toStoreError } from '../postgres/postgres-errors.js';
 import { findPackage, prepareBinaries, type Binaries } from './binaries.js';
 import { ensureDataFolder, ROLE, type DataFolder } from './data-folder.js';
 import { isFull, programError } from './embedded-errors.js';
-import { clearAway, clearEmpty, isServing, PORT, readPostmaster, startPostmaster, stopPostmaster, type Started } from './postmaster.js';
+import {
+  clearAway,
+  clearEmpty,
+  endStuck,
+  isServing,
+  PORT,
+  readPostmaster,
+  startPostmaster,
+  stopPostmaster,
+  type Started,
+} from './postmaster.js';
 import { isAlive, pause } from './processes.js';
 import type { ServerUser } from './server-user.js';
 
@@ -36,8 +46,6 @@ interface Attachment {
   readonly presence: pg.Client;
   readonly pool: pg.Pool;
   readonly data: DataFolder;
-  /** length of the log when this process came */
-  readonly logged: number;
 }
 
 /** Advisory lock of presence; the two-number form shares no key with the one-number locks of the store. */
@@ -61,6 +69,8 @@ export class EmbeddedServer implements Server {
   readonly #log: string;
   #attachment: Promise<Attachment> | null = null;
   #binaries: Promise<Binaries> | null = null;
+  /** length of the server's log when this process came to it */
+  #logged = 0;
   /** why there was no connection, the last time */
   #refusal = 'no answer';
 
@@ -80,8 +90,7 @@ export class EmbeddedServer implements Server {
 
   /** A full disk shows as a lost connection, and its reason in the server's log. */
   async explain(error: WindrowError): Promise<WindrowError> {
-    const since = this.#attachment === null ? null : await this.#attachment.catch(() => null);
-    const output = await readFrom(this.#log, since?.logged ?? 0);
+    const output = await readFrom(this.#log, this.#logged);
     return isFull(output) ? programError('the embedded server', output, this.where) : error;
   }
 
@@ -111,15 +120,20 @@ export class EmbeddedServer implements Server {
       const logged = await sizeOf(this.#log);
       const sockets = await this.#serving(data, quiet);
       const presence = sockets === null ? 'away' : await this.#present(sockets);
-      if (sockets !== null && presence instanceof pg.Client)
-        return this.#watch({ presence, data, logged, pool: this.#createPool(sockets) });
+      if (sockets !== null && presence instanceof pg.Client) {
+        this.#logged = logged;
+        return this.#watch({ presence, data, pool: this.#createPool(sockets) });
+      }
       if (presence === 'starting' || (sockets !== null && sockets !== before)) quiet = Date.now();
       before = sockets ?? before;
-      if (Date.now() - quiet > QUIET_MS)
-        throw new WindrowError('store.locked', 'the embedded server is there but accepts no connection', {
-          where: this.where,
-          found: this.#refusal,
-        });
+      if (Date.now() - quiet > QUIET_MS) {
+        if (!(await endStuck(data.path)))
+          throw new WindrowError('store.locked', 'the embedded server is there but accepts no connection', {
+            where: this.where,
+            found: this.#refusal,
+          });
+        quiet = Date.now();
+      }
       await pause(20);
     }
   }
@@ -158,7 +172,7 @@ export class EmbeddedServer implements Server {
     throw programError('the embedded server', output, this.where);
   }
 
-  /** A session that shows this process is there, or why there is none: a server on its way up or down, or gone. */
+  /** A session that shows this process is there, or why there is none: a server on its way up, or on its way down or gone. */
   async #present(sockets: string): Promise<pg.Client | 'starting' | 'away'> {
     const presence = new pg.Client({
       ...connection(sockets),
@@ -173,7 +187,8 @@ export class EmbeddedServer implements Server {
     } catch (error) {
       await presence.end().catch(() => undefined);
       this.#refusal = (error as Error).message;
-      if (error instanceof pg.DatabaseError && error.code === CANNOT_CONNECT_NOW) return 'starting';
+      // The code is the same for a server on its way down, which is waited for less long.
+      if (error instanceof pg.DatabaseError && error.code === CANNOT_CONNECT_NOW && !/shutting down/.test(error.message)) return 'starting';
       if (isConnectionLoss(error)) return 'away';
       throw toStoreError(error, this.where);
     }
@@ -232,7 +247,7 @@ async function isUp(started: Started, data: string): Promise<boolean> {
     const outcome = await Promise.race([started.ended, pause(10)]);
     if (outcome === 'ended') return false;
     const running = await readPostmaster(data);
-    if (running?.ready === true && (await isServing(running, data))) return true;
+    if (running?.status === 'ready' && (await isServing(running, data))) return true;
   }
 }
 

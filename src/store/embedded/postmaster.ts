@@ -28,8 +28,8 @@ export interface Postmaster {
   readonly pid: number;
   /** folder of the socket; null while the server has not written it yet */
   readonly sockets: string | null;
-  /** accepts connections */
-  readonly ready: boolean;
+  /** as the server writes it: 'starting', 'ready', 'stopping', … */
+  readonly status: string | null;
 }
 
 /** What postmaster.pid says; null where there is none. */
@@ -43,7 +43,7 @@ function parsePostmaster(text: string): Postmaster | null {
   const lines = text.split('\n');
   const pid = Number(lines[0]);
   if (!Number.isInteger(pid) || pid <= 0) return null;
-  return { pid, sockets: lines.length > 5 && lines[4] !== '' ? lines[4] : null, ready: lines[7]?.trim() === 'ready' };
+  return { pid, sockets: lines.length > 5 && lines[4] !== '' ? lines[4] : null, status: lines[7]?.trim() ?? null };
 }
 
 /** Whether the process is a living PostgreSQL of the folder's owner. */
@@ -182,8 +182,11 @@ export async function startPostmaster(
   }
 }
 
-/** How long the server may take to write everything; then it stops at once, and recovers at its next start. */
-const STOP_MS = 60_000;
+/**
+ * How long the server may take to write everything; then it stops at once, and recovers at its next start. A server that is asked to
+ * stop while it recovers from a crash may never end (seen with PostgreSQL 18.4 after a full disk).
+ */
+const STOP_MS = 15_000;
 const STOP_AT_ONCE_MS = 10_000;
 
 /** Fast shutdown: sessions end, everything is written. Resolves when the data folder is free. */
@@ -192,6 +195,13 @@ export async function stopPostmaster(data: string): Promise<void> {
   if (running === null || !(await isServing(running, data))) return;
   if (!(await endsBy('SIGINT', running, data, STOP_MS))) await endsBy('SIGQUIT', running, data, STOP_AT_ONCE_MS);
   if (running.sockets !== null) await removeSockets(running.sockets);
+}
+
+/** Ends a server that has been stopping for too long, because whoever stopped it has gone; false where there is none. */
+export async function endStuck(data: string): Promise<boolean> {
+  const running = await readPostmaster(data);
+  if (running?.status !== 'stopping' || !(await isServing(running, data))) return false;
+  return endsBy('SIGQUIT', running, data, STOP_AT_ONCE_MS);
 }
 
 async function endsBy(signal: NodeJS.Signals, running: Postmaster, data: string, limit: number): Promise<boolean> {
