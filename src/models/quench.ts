@@ -4,6 +4,7 @@
  * The ground state is that of the connected component(s) of the other Hamiltonian's graph which hold the basis states of `within`. It is
  * refused where it is not one state to double precision, so that a degenerate level never gives an arbitrary vector.
  */
+import { WindrowError } from '../core/errors.js';
 import { canonicalJson } from '../core/json.js';
 import type { Json } from '../core/json.js';
 import { groundState } from '../linalg/ground-state.js';
@@ -60,8 +61,19 @@ function readQuench<P>(definition: FamilyDefinition<P>, request: SystemRequest<P
   }
   const all = parsed.data as Record<string, Json>;
   const parameters = Object.fromEntries(Object.keys(overrides).map((name) => [name, all[name]]));
-  definition.checkParameters?.({ ...request, parameters: parsed.data });
+  checkOverrides(definition, { ...request, parameters: parsed.data }, where);
   return { coupling: readCoupling(definition, request.size, all, form, request.coupling, where), parameters };
+}
+
+/** What a list of the wrong length is refused with names the point's own parameters; here it is the ground state's. */
+function checkOverrides<P>(definition: FamilyDefinition<P>, request: SystemRequest<P>, where: string): void {
+  try {
+    definition.checkParameters?.(request);
+  } catch (error) {
+    if (!(error instanceof WindrowError)) throw error;
+    const { details } = error;
+    throw new WindrowError(error.code, error.message, { ...details, where: `${where}.${details.where ?? 'parameters'}`, cause: error });
+  }
 }
 
 function readCoupling<P>(
