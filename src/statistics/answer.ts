@@ -6,6 +6,7 @@
  * the resolution is doubled or halved. The flags of the point itself stand with the point and are not repeated.
  */
 import { buildSchedule } from '../schedules/registry.js';
+import type { IntervalDistribution } from '../schedules/types.js';
 import type { Flag, MeasuredPoint } from '../spectral/types.js';
 import { budgetStatistics, type BudgetStatistics } from './budget.js';
 import { brightPart, isReturn, mergeResonant, type MergedLevels } from './levels.js';
@@ -38,8 +39,7 @@ export function answer(measured: MeasuredPoint, question: Question): CellFields 
   const bright = brightPart(measured.measure);
   const notes = new Map<Flag, string>();
 
-  const energy = question.resolution.energy === 'auto' ? 1 / (budget * distribution.mean) : question.resolution.energy;
-  const weight = question.resolution.weight === 'auto' ? 1 / budget : question.resolution.weight;
+  const { energy, weight } = usedResolution(question, distribution);
   const windows = coverLevels(bright, distribution, energy);
   const winding = windingNumber(bright, windows, weight);
   const low = windingNumber(bright, coverLevels(bright, distribution, 2 * energy), 2 * weight);
@@ -89,6 +89,17 @@ export function answer(measured: MeasuredPoint, question: Question): CellFields 
     sampled_seed: sampling?.seed ?? null,
     flags: [...notes.keys()],
     flag_reasons: [...notes.values()],
+  };
+}
+
+/** The resolution in numbers: 'auto' is what the budget can show. */
+export function usedResolution(
+  { resolution, budget }: Pick<Question, 'resolution' | 'budget'>,
+  { mean }: Pick<IntervalDistribution, 'mean'>,
+): { readonly energy: number; readonly weight: number } {
+  return {
+    energy: resolution.energy === 'auto' ? 1 / (budget * mean) : resolution.energy,
+    weight: resolution.weight === 'auto' ? 1 / budget : resolution.weight,
   };
 }
 

@@ -56,7 +56,16 @@ const DEEPEST = 24;
  * Times that Σ_n f_n exp(i n θ) winds around the origin for θ from 0 to 2π; null where the curve passes through the origin within
  * rounding, so that the number is not defined. O(K log K).
  */
-export function curveWinding({ re, im }: DrawnAmplitudes): number | null {
+export function curveWinding(amplitudes: DrawnAmplitudes): number | null {
+  const total = curvePhase(amplitudes).at(-1)!;
+  return Number.isNaN(total) ? null : Math.round(total / (2 * Math.PI));
+}
+
+/**
+ * Unwrapped phase of Σ_n f_n exp(i n θ) along the circle, relative to that at θ = 0: entry m is at θ = 2π m/(length − 1). NaN from where
+ * the curve passes through the origin within rounding. O(K log K).
+ */
+export function curvePhase({ re, im }: DrawnAmplitudes): Float64Array {
   let size = 64;
   while (size < OVERSAMPLING * re.length) size *= 2;
   const gridRe = new Float64Array(size);
@@ -74,13 +83,13 @@ export function curveWinding({ re, im }: DrawnAmplitudes): number | null {
     const c = evaluate(re, im, middle);
     return follow(from, a, middle, c, depth - 1) + follow(middle, c, to, b, depth - 1);
   };
-  let total = 0;
+  const phase = new Float64Array(size + 1);
   const step = (2 * Math.PI) / size;
   for (let m = 0; m < size; m++) {
     const next = (m + 1) % size;
-    total += follow(m * step, [gridRe[m], gridIm[m]], (m + 1) * step, [gridRe[next], gridIm[next]], DEEPEST);
+    phase[m + 1] = phase[m] + follow(m * step, [gridRe[m], gridIm[m]], (m + 1) * step, [gridRe[next], gridIm[next]], DEEPEST);
   }
-  return Number.isNaN(total) ? null : Math.round(total / (2 * Math.PI));
+  return phase;
 }
 
 function evaluate(re: Float64Array, im: Float64Array, angle: number): readonly [number, number] {
