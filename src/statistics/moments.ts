@@ -15,7 +15,7 @@
  *
  * Measures are those of levels.ts: v > 0, Σ v = 1, merged where χ = 1.
  */
-import { CholeskyDecomposition, Matrix } from 'ml-matrix';
+import { positiveDefiniteSolver, type LinearSolve } from '../linalg/positive-definite.js';
 import type { IntervalDistribution } from '../schedules/types.js';
 import type { SpectralMeasure } from '../spectral/types.js';
 import { isReturn } from './levels.js';
@@ -201,8 +201,6 @@ function inverseRows(pairs: Rows, n: number): Rows {
   };
 }
 
-type LinearSolve = (right: Float64Array) => Float64Array;
-
 /** Re C = −1/2: z_i(1 − κ/2) + (κ/2) Σ_j v_j z_j = r_i, and Σ_i v_i z_i = Σ_i v_i r_i. */
 function uniformMatrix(v: Float64Array, kappa: number): LinearSolve {
   return (right) => {
@@ -214,25 +212,23 @@ function uniformMatrix(v: Float64Array, kappa: number): LinearSolve {
 function connectedMatrix(v: Float64Array, inverse: Rows, kappa: number): LinearSolve {
   const n = v.length;
   const t = v.map(Math.sqrt);
-  const matrix = Matrix.zeros(n, n);
   const diagonal = new Float64Array(n).fill(1);
   const bRe = new Float64Array(n);
   const bIm = new Float64Array(n);
-  for (let i = 0; i < n; i++) {
-    inverse.fill(i, bRe, bIm);
-    for (let j = i + 1; j < n; j++) {
-      const c = kappa * (bRe[j] - 1);
-      diagonal[i] += c * v[j];
-      diagonal[j] += c * v[i];
-      matrix.set(i, j, -c * t[i] * t[j]);
-      matrix.set(j, i, -c * t[i] * t[j]);
+  const solve = positiveDefiniteSolver(n, (set) => {
+    for (let i = 0; i < n; i++) {
+      inverse.fill(i, bRe, bIm);
+      for (let j = i + 1; j < n; j++) {
+        const c = kappa * (bRe[j] - 1);
+        diagonal[i] += c * v[j];
+        diagonal[j] += c * v[i];
+        set(i, j, -c * t[i] * t[j]);
+      }
     }
-  }
-  for (let i = 0; i < n; i++) matrix.set(i, i, diagonal[i]);
-  const factor = new CholeskyDecomposition(matrix);
+    diagonal.forEach((value, i) => set(i, i, value));
+  });
   return (right) => {
-    const scaled = factor.solve(Matrix.columnVector(right.map((value, i) => value * t[i])));
-    const z = t.map((value, i) => scaled.get(i, 0) / value);
+    const z = solve(right.map((value, i) => value * t[i])).map((value, i) => value / t[i]);
     // One Jacobi sweep: the division by a tiny t_i has magnified the error of its component; the equation itself gives it back.
     const rest = right.slice();
     for (let i = 0; i < n; i++) {

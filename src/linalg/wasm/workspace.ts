@@ -62,6 +62,7 @@ export interface KernelFunctions {
     breakdown: number,
   ) => number;
   readonly overlaps: (basis: number, count: number, n: number, x: number, out: number) => void;
+  readonly cholesky: (a: number, n: number) => void;
   readonly averagedStep: (n: number, x: number, r: number, v: number, c: number, u: number, kappa: number, out: number) => void;
 }
 

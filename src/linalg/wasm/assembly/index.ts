@@ -9,5 +9,6 @@
 export { averagedStep } from './averaged';
 export { beforeSquare, householderComplex } from './householder-complex';
 export { householderReal, twoRows } from './householder-real';
+export { cholesky, subtractDots } from './cholesky';
 export { estimate, lanczosSteps, multiply, overlaps } from './lanczos';
 export { tridiagonalQl } from './tridiagonal-ql';
