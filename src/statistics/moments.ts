@@ -192,10 +192,18 @@ function inverseRows(pairs: Rows, n: number): Rows {
     fill(i, re, im) {
       pairs.fill(i, re, im);
       for (let j = i + 1; j < n; j++) {
-        // Divided twice rather than by the square, which could underflow.
-        const size = Math.hypot(re[j], im[j]);
-        re[j] = re[j] / size / size;
-        im[j] = -im[j] / size / size;
+        // By the ratio of the parts rather than the square of the modulus, which could underflow (common practice).
+        const a = re[j];
+        const b = im[j];
+        if (Math.abs(a) >= Math.abs(b)) {
+          const ratio = b / a;
+          re[j] = 1 / (a + b * ratio);
+          im[j] = -ratio * re[j];
+        } else {
+          const ratio = a / b;
+          im[j] = -1 / (b + a * ratio);
+          re[j] = -ratio * im[j];
+        }
       }
     },
   };
