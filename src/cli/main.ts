@@ -16,6 +16,7 @@ import { mapCommand } from './commands/map.js';
 import { migrateCommand } from './commands/migrate.js';
 import { pointCommand } from './commands/point.js';
 import { resumeCommand } from './commands/resume.js';
+import { sectorsCommand } from './commands/sectors.js';
 import { statusCommand } from './commands/status.js';
 import { stopCommand } from './commands/stop.js';
 import { sweepCommand } from './commands/sweep.js';
@@ -53,6 +54,7 @@ function buildProgram(io: Io): Command {
     cutCommand,
     boundaryCommand,
     pointCommand,
+    sectorsCommand,
     exportCommand,
     catalogueCommands,
     migrateCommand,
