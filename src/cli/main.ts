@@ -20,6 +20,7 @@ import { sectorsCommand } from './commands/sectors.js';
 import { statusCommand } from './commands/status.js';
 import { stopCommand } from './commands/stop.js';
 import { sweepCommand } from './commands/sweep.js';
+import { traceCommand } from './commands/trace.js';
 import { workerCommand } from './commands/worker.js';
 import { EXIT, type Io } from './context.js';
 import { errorText } from './report-error.js';
@@ -53,6 +54,7 @@ function buildProgram(io: Io): Command {
     mapCommand,
     cutCommand,
     boundaryCommand,
+    traceCommand,
     pointCommand,
     sectorsCommand,
     exportCommand,

@@ -71,7 +71,7 @@ describe('a follow-up', () => {
     await sweep(doubleWell('seen', { couplings: 3, schedules: 1 }));
     const blind = doubleWell('blind', { couplings: 3, schedules: 1 }).grid.questions.map(({ question }) => question);
     const document = (await store.findSweep('seen'))!.document as object;
-    const { questions } = expandGrid(documentFromJson({ ...document, detector: { efficiency: 0.25 } } as never));
+    const { questions } = expandGrid(documentFromJson({ ...document, detector: { efficiency: 0.25 } }));
     expect(questions[0].question).toEqual({ ...blind[0], detector: { efficiency: 0.25 } });
     await ask('seen', questions);
     for (const { questionOrdinal, fields, point } of await rowsOf(store, 'seen')) {

@@ -2,7 +2,6 @@
 import type { Command } from 'commander';
 import { WindrowError } from '../../core/errors.js';
 import type { Json } from '../../core/json.js';
-import { findModel, modelFamilies } from '../../models/registry.js';
 import { flatRecord, RECORD_KEYS } from '../../report/flat-record.js';
 import { formatNumber, scheduleText, stateText } from '../../report/format.js';
 import { renderPairs, renderTable } from '../../report/table.js';
@@ -11,81 +10,14 @@ import type { CellRow } from '../../store/types.js';
 import { evaluatePoint } from '../../sweep/evaluate.js';
 import { CELL_FIELDS, POINT_FIELDS } from '../../sweep/fields.js';
 import { expandGrid } from '../../sweep/grid.js';
-import { readSweepFile } from '../../sweep/read-file.js';
 import { documentFromJson } from '../../sweep/read.js';
 import type { Grid } from '../../sweep/types.js';
 import { memoryLimit } from '../compose.js';
 import { EXIT, type ExitStatus, type Io } from '../context.js';
-import { collect, computeOptions, parsePairs, verb } from '../options.js';
+import { collect, computeOptions, verb } from '../options.js';
+import { pointDocument, type PointOptions } from '../point-document.js';
 import { print } from '../print.js';
 import { runVerb } from '../run-verb.js';
-
-interface Options {
-  readonly model?: string;
-  readonly set?: string[];
-  readonly certify?: true;
-}
-
-type Document = { [key: string]: unknown };
-
-/** Keys of a sweep file; any other key of --set is a parameter of the model. */
-const DOCUMENT_KEYS = new Set([
-  'size',
-  'coupling',
-  'parameters',
-  'prepare',
-  'detect',
-  'schedules',
-  'resolution',
-  'budget',
-  'disorder',
-  'sampling',
-  'detector',
-  'certify',
-]);
-
-/** What a point is asked when nothing else is said. */
-const DEFAULTS = { schedules: [{ family: 'exponential', mean: 1 }], budget: 1000 } as const;
-
-function assign(document: Document, path: readonly string[], value: unknown): void {
-  const [key, ...rest] = path as [string, ...string[]];
-  if (rest.length === 0) document[key] = value;
-  else {
-    const inner = { ...((document[key] as Document | undefined) ?? {}) };
-    assign(inner, rest, value);
-    document[key] = inner;
-  }
-}
-
-/** `as` and `schedule` are short for `coupling.as` and a list of one schedule. */
-function override(document: Document, pairs: readonly (readonly [string, unknown])[]): Document {
-  const changed = { ...document };
-  const scale =
-    pairs.find(([key]) => key === 'as' || key === 'coupling.as')?.[1] ?? (document['coupling'] as { as?: unknown } | undefined)?.as;
-  for (const [key, value] of pairs) {
-    if (key === 'as' || key === 'coupling.as') continue;
-    if (key === 'schedule') changed['schedules'] = [value];
-    else if (key === 'coupling') changed['coupling'] = { values: [value], ...(scale === undefined ? {} : { as: scale }) };
-    else {
-      const path = key.split('.');
-      assign(changed, DOCUMENT_KEYS.has(path[0]) ? path : ['parameters', key], value);
-    }
-  }
-  return changed;
-}
-
-function documentOf(file: string | undefined, { model, set, certify }: Options): Document {
-  const pairs = [...parsePairs('--set', set ?? []), ...(certify === true ? [['certify', true] as const] : [])];
-  if (file !== undefined) {
-    const read = readSweepFile(file, { allowLarge: true }) as unknown as Document;
-    return override(model === undefined ? read : { ...read, model }, pairs);
-  }
-  if (model === undefined) {
-    throw new WindrowError('cli.usage', 'a point needs a sweep file or --model', { allowed: [...modelFamilies.keys()].join(', ') });
-  }
-  const family = findModel(model);
-  return override({ name: 'point', model, prepare: family.states[0]?.name, ...DEFAULTS }, pairs);
-}
 
 /** @throws WindrowError `cli.usage` where an axis is left open */
 function onlyPoint(grid: Grid): void {
@@ -168,8 +100,8 @@ export function pointCommand(program: Command, io: Io): void {
     )
     .option('--certify', 'count the accessible dimension exactly, by modular arithmetic');
   computeOptions(command).action(
-    runVerb<[string | undefined], Options>(io, {}, async (context, options, file) => {
-      const grid = expandGrid(documentFromJson(documentOf(file, options) as Json));
+    runVerb<[string | undefined], PointOptions>(io, {}, async (context, options, file) => {
+      const grid = expandGrid(documentFromJson(pointDocument(file, options) as Json));
       onlyPoint(grid);
       const rows = rowsOf(grid, memoryLimit(context.settings));
       const records = rows.map((row) => flatRecord(row, null));
