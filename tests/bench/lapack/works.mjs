@@ -85,7 +85,7 @@ function randomState(n) {
 function measured(matrix, state) {
   const system = { hilbertDimension: matrix.dimension, sectorDimension: matrix.dimension, matrix, detected: state, prepared: state };
   const { measure } = spectralMeasure(system);
-  return [measure.energies[0], measure.weights.reduce((sum, v, k) => sum + v * measure.energies[k] ** 2, 0)];
+  return [measure.weights.reduce((sum, v) => sum + v, 0), measure.weights.reduce((sum, v, k) => sum + v * measure.energies[k] ** 2, 0)];
 }
 
 const spectral = (name, rounds, aim, make) => ({
@@ -175,7 +175,7 @@ export const works = [
   tridiagonal(10000),
   averaged(50, 20000),
   averaged(200, 2000),
-  averaged(1000, 60),
+  averaged(1000, 400),
   moments(200),
   moments(1000),
 ];

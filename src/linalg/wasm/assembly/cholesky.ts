@@ -4,7 +4,7 @@
  * Every element is a dot product of two rows of L, which are read in order; two rows by four are taken together, so that eight sums share six
  * loads.
  */
-import { rowStart } from './vectors';
+import { bothSums, rowStart } from './vectors';
 
 /**
  * @param a lower triangle in rows in blocks of four, both triangles of the squares on the diagonal; rows past n are those of the identity.
@@ -66,13 +66,6 @@ export function subtractDots(r0: usize, r1: usize, q0: usize, stride: usize, len
   v128.store(r0, f64x2.sub(v128.load(r0, 16), bothSums(s2, s3)), 16);
   v128.store(r1, f64x2.sub(v128.load(r1), bothSums(t0, t1)));
   v128.store(r1, f64x2.sub(v128.load(r1, 16), bothSums(t2, t3)), 16);
-}
-
-/** The sum of the lanes of x, and that of y. */
-function bothSums(x: v128, y: v128): v128 {
-  const low = i8x16.shuffle(x, y, 0, 1, 2, 3, 4, 5, 6, 7, 16, 17, 18, 19, 20, 21, 22, 23);
-  const high = i8x16.shuffle(x, y, 8, 9, 10, 11, 12, 13, 14, 15, 24, 25, 26, 27, 28, 29, 30, 31);
-  return f64x2.add(low, high);
 }
 
 /** Four elements x of a row: x ← x L⁻ᵀ, L the square on the diagonal of the rows they belong with. */

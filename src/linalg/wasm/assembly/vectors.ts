@@ -50,3 +50,10 @@ export function eliminate(x: usize, m: i32): f64 {
   scaleBy(x, 1 / Math.sqrt(2 * norm * (norm + Math.abs(last))), blocks);
   return r;
 }
+
+/** The sum of the lanes of x, and that of y. */
+export function bothSums(x: v128, y: v128): v128 {
+  const low = i8x16.shuffle(x, y, 0, 1, 2, 3, 4, 5, 6, 7, 16, 17, 18, 19, 20, 21, 22, 23);
+  const high = i8x16.shuffle(x, y, 8, 9, 10, 11, 12, 13, 14, 15, 24, 25, 26, 27, 28, 29, 30, 31);
+  return f64x2.add(low, high);
+}
