@@ -121,7 +121,13 @@ export function takeWorkspace(bytes: number): Workspace {
   const { memory } = instance.exports;
   const reserve = (needed: number): void => {
     const missing = Math.ceil((FIRST_ADDRESS + needed - memory.buffer.byteLength) / PAGE);
-    if (missing > 0) memory.grow(missing);
+    if (missing <= 0) return;
+    try {
+      memory.grow(missing);
+    } catch (cause) {
+      // Said the way every other allocation that fails is said, so that it counts as a matter of size.
+      throw new RangeError(`allocation of ${needed} bytes for the kernels failed`, { cause });
+    }
   };
   reserve(bytes);
   let lent = true;
