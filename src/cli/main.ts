@@ -10,11 +10,13 @@ import { WindrowError } from '../core/errors.js';
 import { settingsHelp } from '../core/settings.js';
 import { boundaryCommand } from './commands/boundary.js';
 import { catalogueCommands } from './commands/catalogues.js';
+import { compareCommand } from './commands/compare.js';
 import { cutCommand } from './commands/cut.js';
 import { exportCommand } from './commands/export.js';
 import { mapCommand } from './commands/map.js';
 import { migrateCommand } from './commands/migrate.js';
 import { pointCommand } from './commands/point.js';
+import { recheckCommand } from './commands/recheck.js';
 import { resumeCommand } from './commands/resume.js';
 import { sectorsCommand } from './commands/sectors.js';
 import { statusCommand } from './commands/status.js';
@@ -55,6 +57,8 @@ function buildProgram(io: Io): Command {
     cutCommand,
     boundaryCommand,
     traceCommand,
+    compareCommand,
+    recheckCommand,
     pointCommand,
     sectorsCommand,
     exportCommand,

@@ -73,6 +73,8 @@ export interface CellQuery {
   readonly sweep: string;
   /** ordinals of the sweep's questions and follow-ups; all when absent */
   readonly questions?: readonly number[];
+  /** places of the grid; all when absent */
+  readonly ordinals?: readonly number[];
 }
 
 /** Names of roles that cannot log in themselves; logins are put into them. */

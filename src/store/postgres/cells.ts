@@ -26,7 +26,7 @@ const DECLARE = `
   left join windrow.measure m on m.point_id = sp.point_id
   left join windrow.cell c on c.point_id = sp.point_id and c.question_id = sq.question_id
   left join windrow.failure f on f.point_id = sp.point_id
-  where sp.sweep = $1 and ($2::integer[] is null or sq.ordinal = any($2))
+  where sp.sweep = $1 and ($2::integer[] is null or sq.ordinal = any($2)) and ($3::bigint[] is null or sp.ordinal = any($3))
   order by sp.ordinal, sq.ordinal`;
 
 type Row = readonly [
@@ -53,10 +53,10 @@ interface SharedOfPoint {
  * @param client inside a transaction that shows one snapshot
  * @throws sweep.unknown
  */
-export async function* readCells(client: ClientBase, { sweep, questions }: CellQuery): AsyncGenerator<CellRow> {
+export async function* readCells(client: ClientBase, { sweep, questions, ordinals }: CellQuery): AsyncGenerator<CellRow> {
   await requireSweep(client, sweep);
   const asked = await readQuestions(client, sweep);
-  await client.query(DECLARE, [sweep, questions === undefined ? null : integers(questions)]);
+  await client.query(DECLARE, [sweep, ...[questions, ordinals].map((numbers) => (numbers === undefined ? null : integers(numbers)))]);
   let shared: SharedOfPoint | null = null;
   for (;;) {
     const { rows } = await client.query<unknown[]>({ text: `fetch ${FETCH} from result`, rowMode: 'array' });
