@@ -119,8 +119,9 @@ describe.skipIf(redis === null)('BullMQ queue', () => {
     const first = await small.consume(async (job) => void seen.push(job.id), { concurrency: 4 });
     await waitFor(() => seen.length === 2, 'the small jobs');
     expect(seen.sort()).toEqual([sampleJob(1).id, sampleJob(3).id].sort());
-    expect(await queue.depth()).toBe(2);
+    // A handler ends before its job has left the queue.
     await first.close();
+    expect(await queue.depth()).toBe(2);
     const second = await both.consume(async (job) => void seen.push(job.id), { concurrency: 4 });
     await empty(queue);
     await second.close();
