@@ -2,7 +2,8 @@
  * Curves: samples ordered along one axis, one curve for each question and each setting of the other axes. Maps, cuts and boundaries are
  * made from them.
  *
- * Disorder realisations are averaged: samples that differ only in an averaged axis become one point with their mean and standard error.
+ * Disorder realisations are averaged: samples that differ only in an averaged axis become one point with their mean and standard error,
+ * or with their typical value exp<ln x> and its standard error (that of <ln x>, times the value).
  * A point is `doubtful` if any of its samples is; samples without a value don't enter the mean.
  */
 import { WindrowError } from '../core/errors.js';
@@ -12,9 +13,9 @@ import type { Coordinates, Sample, SampleState } from './samples.js';
 export interface CurvePoint {
   readonly x: number | string;
   readonly state: SampleState;
-  /** Mean over the averaged samples; set where state is `value` or `doubtful`. */
+  /** Mean or typical value of the averaged samples; set where state is `value` or `doubtful`. */
   readonly value: number | null;
-  /** Standard error of that mean; null with one sample. */
+  /** Its standard error; null with one sample, and for a typical value of 0. */
   readonly error: number | null;
   /** Samples that entered the mean. */
   readonly count: number;
@@ -64,6 +65,25 @@ export function otherAxes(coordinates: Coordinates, without: readonly string[]):
   return Object.fromEntries(Object.entries(coordinates).filter(([axis]) => !without.includes(axis)));
 }
 
+interface Mean {
+  readonly mean: number;
+  readonly error: number | null;
+}
+
+function meanOf(values: readonly number[]): Mean {
+  const count = values.length;
+  const mean = values.reduce((sum, value) => sum + value, 0) / count;
+  const spread = values.reduce((sum, value) => sum + (value - mean) ** 2, 0);
+  return { mean, error: count > 1 ? Math.sqrt(spread / (count * (count - 1))) : null };
+}
+
+function typicalValue(values: readonly number[]): Mean {
+  if (values.includes(0)) return { mean: 0, error: null };
+  const { mean, error } = meanOf(values.map(Math.log));
+  const typical = Math.exp(mean);
+  return { mean: typical, error: error === null ? null : typical * error };
+}
+
 function averaged(x: number | string, samples: readonly Sample[]): CurvePoint {
   const values = samples.flatMap(({ value }) => (value === null ? [] : [value]));
   const count = values.length;
@@ -73,13 +93,15 @@ function averaged(x: number | string, samples: readonly Sample[]): CurvePoint {
     const state = states.includes('failed') ? 'failed' : states.includes('missing') ? 'missing' : 'undefined-value';
     return { x, state, value: null, error: null, count, sensitive };
   }
-  const mean = values.reduce((sum, value) => sum + value, 0) / count;
-  const spread = values.reduce((sum, value) => sum + (value - mean) ** 2, 0);
+  const typical = samples[0]?.average === 'typical';
+  // Of a quantity that is negative somewhere there is no logarithm, hence no typical value.
+  if (typical && values.some((value) => value < 0)) return { x, state: 'undefined-value', value: null, error: null, count: 0, sensitive };
+  const { mean, error } = typical ? typicalValue(values) : meanOf(values);
   return {
     x,
     state: samples.some(({ state }) => state === 'doubtful') ? 'doubtful' : 'value',
     value: mean,
-    error: count > 1 ? Math.sqrt(spread / (count * (count - 1))) : null,
+    error,
     count,
     sensitive,
   };

@@ -10,6 +10,10 @@ import type { Quantity } from './quantities.js';
 /** `undefined-value`: computed, but the quantity has no value there, such as a median past the budget. */
 export type SampleState = 'value' | 'doubtful' | 'undefined-value' | 'failed' | 'missing';
 
+/** How realisations become one value: the arithmetic mean, or the typical value exp<ln x>, which rare large values do not carry. */
+export const AVERAGES = ['mean', 'typical'] as const;
+export type Average = (typeof AVERAGES)[number];
+
 export type Coordinates = { readonly [axis: string]: number | string };
 
 export interface Sample {
@@ -20,6 +24,8 @@ export interface Sample {
   readonly state: SampleState;
   /** Set where state is `value` or `doubtful`. */
   readonly value: number | null;
+  /** How it is averaged with others of its kind; the mean when absent. */
+  readonly average?: Average;
   /** The winding number differs at twice or half the resolution. */
   readonly sensitive: boolean;
   /** The resolution that was used; null where nothing was computed. */

@@ -2,6 +2,7 @@
 import type { Command } from 'commander';
 import { Option } from 'commander';
 import { parse as parseYaml } from 'yaml';
+import { type Average, AVERAGES } from '../analysis/samples.js';
 import { WindrowError } from '../core/errors.js';
 import { FORMATS } from './context.js';
 
@@ -25,6 +26,16 @@ export function computeOptions(command: Command): Command {
   return command
     .option('--threads <count>', 'compute threads')
     .option('--memory <size>', 'memory one evaluation may use, such as 512M or 2G');
+}
+
+export interface AverageOption {
+  readonly average?: Average;
+}
+
+export function averageOption(command: Command): Command {
+  return command.addOption(
+    new Option('--average <kind>', 'disorder realisations: their mean (standard), or the typical value exp<ln x>').choices([...AVERAGES]),
+  );
 }
 
 export const collect = (value: string, all: string[] | undefined): string[] => [...(all ?? []), value];

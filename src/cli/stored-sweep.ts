@@ -1,7 +1,7 @@
 /** A sweep in the store as commands read it: its grid, its words, and samples of its rows. */
 import { WindrowError } from '../core/errors.js';
 import type { Quantity } from '../analysis/quantities.js';
-import { collectSamples, type Coordinates, type Sample } from '../analysis/samples.js';
+import { type Average, collectSamples, type Coordinates, type Sample } from '../analysis/samples.js';
 import { samplesAt } from '../analysis/cut.js';
 import { findModel } from '../models/registry.js';
 import { stateText } from '../report/format.js';
@@ -66,6 +66,8 @@ export interface Selection {
   /** Numbers of questions; all when absent. */
   readonly questions?: readonly number[] | undefined;
   readonly at?: Coordinates;
+  /** How disorder realisations are averaged; the mean when absent. */
+  readonly average?: Average | undefined;
 }
 
 /**
@@ -76,8 +78,9 @@ export async function readSamples(
   store: ResultStore,
   sweep: StoredSweep,
   quantity: Quantity,
-  { questions, at = {} }: Selection,
+  { questions, at = {}, average = 'mean' }: Selection,
 ): Promise<Sample[]> {
   const rows = store.cells({ sweep: sweep.grid.name, ...(questions === undefined ? {} : { questions }) });
-  return samplesAt(await collectSamples(rows, quantity), at);
+  const samples = samplesAt(await collectSamples(rows, quantity), at);
+  return average === 'mean' ? samples : samples.map((sample) => ({ ...sample, average }));
 }

@@ -14,12 +14,12 @@ import {
 import { openStore } from '../compose.js';
 import type { Io } from '../context.js';
 import { followedQuestions, type FollowUpOptions, followUpOptions } from '../follow-up-options.js';
-import { collect, parsePlace, storeOption, verb } from '../options.js';
+import { averageOption, type AverageOption, collect, parsePlace, storeOption, verb } from '../options.js';
 import { print } from '../print.js';
 import { runVerb } from '../run-verb.js';
 import { readSamples, readStoredSweep } from '../stored-sweep.js';
 
-interface Options extends BoundaryOptions, FollowUpOptions {
+interface Options extends BoundaryOptions, FollowUpOptions, AverageOption {
   readonly along?: string;
   readonly at?: string[];
 }
@@ -30,14 +30,14 @@ export function boundaryCommand(program: Command, io: Io): void {
     .option('--along <axis>', 'numeric axis to search along; the coupling where it varies')
     .option('--question <numbers>', 'only these questions, such as 0,2')
     .option('--at <axis=value>', 'only this value of an axis; may be repeated', collect);
-  storeOption(followUpOptions(boundaryOptions(command))).action(
+  storeOption(averageOption(followUpOptions(boundaryOptions(command)))).action(
     runVerb<[string], Options>(io, {}, async (context, options, name) => {
       const choice = boundaryChoice(options);
       const at = parsePlace('--at', options.at);
       const store = await openStore(context);
       const sweep = await readStoredSweep(store, name);
       const { questions, status } = await followedQuestions(context, store, sweep, options, at);
-      const samples = await readSamples(store, sweep, choice.quantity, { questions, at });
+      const samples = await readSamples(store, sweep, choice.quantity, { questions, at, average: options.average });
       const along = options.along ?? mapAxes(sweep.grid.axes, Object.keys(at)).x;
       requireAxis(samples, along);
       const boundaries = boundariesOf(samples, choice, along);

@@ -11,12 +11,12 @@ import { renderTable } from '../../report/table.js';
 import { openStore } from '../compose.js';
 import { type Io, say } from '../context.js';
 import { followedQuestions, type FollowUpOptions, followUpOptions } from '../follow-up-options.js';
-import { collect, parsePlace, storeOption, verb } from '../options.js';
+import { averageOption, type AverageOption, collect, parsePlace, storeOption, verb } from '../options.js';
 import { print } from '../print.js';
 import { runVerb } from '../run-verb.js';
 import { readSamples, readStoredSweep } from '../stored-sweep.js';
 
-interface Options extends FollowUpOptions {
+interface Options extends FollowUpOptions, AverageOption {
   readonly field: string;
   readonly along?: string;
   readonly at?: string[];
@@ -73,7 +73,7 @@ export function cutCommand(program: Command, io: Io): void {
     .option('--at <axis=value>', 'only this value of another axis, such as size=12; may be repeated', collect)
     .option('--question <numbers>', 'only these questions, such as 0,2')
     .option('--figures <folder>', 'also write the figure there, as SVG and PNG');
-  storeOption(followUpOptions(command)).action(
+  storeOption(averageOption(followUpOptions(command))).action(
     runVerb<[string], Options>(io, {}, async (context, options, name) => {
       const quantity = findQuantity(options.field);
       const at = parsePlace('--at', options.at);
@@ -81,7 +81,7 @@ export function cutCommand(program: Command, io: Io): void {
       const sweep = await readStoredSweep(store, name);
       const along = options.along ?? mapAxes(sweep.grid.axes, Object.keys(at)).x;
       const { questions, status } = await followedQuestions(context, store, sweep, options, at);
-      const curves = curvesOf(await readSamples(store, sweep, quantity, { questions, at }), along);
+      const curves = curvesOf(await readSamples(store, sweep, quantity, { questions, at, average: options.average }), along);
       await print(context, {
         table: () => cutText(curves, along, quantity),
         json: () => cutRows(curves, along, quantity).rows,

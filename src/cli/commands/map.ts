@@ -7,12 +7,12 @@ import { openStore } from '../compose.js';
 import { type Io, say } from '../context.js';
 import { followedQuestions, type FollowUpOptions, followUpOptions } from '../follow-up-options.js';
 import { mapDocument, mapRows, mapText, readMapView, writeMapFigures } from '../map-view.js';
-import { collect, parsePlace, storeOption, verb } from '../options.js';
+import { averageOption, type AverageOption, collect, parsePlace, storeOption, verb } from '../options.js';
 import { print } from '../print.js';
 import { runVerb } from '../run-verb.js';
 import { readStoredSweep } from '../stored-sweep.js';
 
-interface MapOptions extends BoundaryOptions, FollowUpOptions {
+interface MapOptions extends BoundaryOptions, FollowUpOptions, AverageOption {
   readonly field: string;
   readonly x?: string;
   readonly y?: string;
@@ -33,7 +33,7 @@ export function mapCommand(program: Command, io: Io): void {
     .option('--question <numbers>', 'only these questions, such as 0,2')
     .option('--at <axis=value>', 'only this value of an axis; may be repeated', collect)
     .option('--figures <folder>', 'also write the phase diagrams there, as SVG and PNG');
-  storeOption(followUpOptions(boundaryOptions(command))).action(
+  storeOption(averageOption(followUpOptions(boundaryOptions(command)))).action(
     runVerb<[string], MapOptions>(io, {}, async (context, options, name) => {
       const quantity = findQuantity(options.field);
       const choice = boundaryChoice(options);
@@ -42,7 +42,14 @@ export function mapCommand(program: Command, io: Io): void {
       const sweep = await readStoredSweep(store, name);
       const { questions, status } = await followedQuestions(context, store, sweep, options, at);
       const chosen = mapAxes(sweep.grid.axes, Object.keys(at));
-      const view = await readMapView(store, sweep, quantity, choice, { ...chosen, ...pick(options) }, { questions, at });
+      const view = await readMapView(
+        store,
+        sweep,
+        quantity,
+        choice,
+        { ...chosen, ...pick(options) },
+        { questions, at, average: options.average },
+      );
       await print(context, {
         table: () => mapText(view, context),
         json: () => mapDocument(view),
