@@ -2,6 +2,7 @@
 import { WindrowError } from '../core/errors.js';
 import type { Quantity } from '../analysis/quantities.js';
 import { type Average, collectSamples, type Coordinates, type Sample } from '../analysis/samples.js';
+import { AVERAGED_AXES } from '../analysis/curves.js';
 import { samplesAt } from '../analysis/cut.js';
 import { findModel } from '../models/registry.js';
 import { stateText } from '../report/format.js';
@@ -48,6 +49,14 @@ export async function readStoredSweep(store: ResultStore, name: string): Promise
   const record = await findStoredSweep(store, name);
   const grid = expandGrid(documentFromJson(record.document));
   return { record, grid, labels: sweepLabels(grid, findModel(grid.model)), notes: notesOf(grid) };
+}
+
+/** The sweep with a sentence for captions on how its realisations are averaged, where it has any. */
+export function withAverage(sweep: StoredSweep, average: Average = 'mean'): StoredSweep {
+  const count = sweep.grid.axes.find(({ name }) => AVERAGED_AXES.includes(name))?.values.length ?? 1;
+  if (count < 2) return sweep;
+  const what = average === 'typical' ? 'Typical values exp⟨ln x⟩' : 'Means';
+  return { ...sweep, notes: [...sweep.notes, `${what} over ${count} realisations, with one standard error where bars are drawn.`] };
 }
 
 /** @throws WindrowError `cli.usage` for a question that was neither swept nor followed up */

@@ -14,7 +14,7 @@ import { followedQuestions, type FollowUpOptions, followUpOptions } from '../fol
 import { averageOption, type AverageOption, collect, parsePlace, storeOption, verb } from '../options.js';
 import { print } from '../print.js';
 import { runVerb } from '../run-verb.js';
-import { readSamples, readStoredSweep } from '../stored-sweep.js';
+import { readSamples, readStoredSweep, withAverage } from '../stored-sweep.js';
 
 interface Options extends FollowUpOptions, AverageOption {
   readonly field: string;
@@ -78,7 +78,7 @@ export function cutCommand(program: Command, io: Io): void {
       const quantity = findQuantity(options.field);
       const at = parsePlace('--at', options.at);
       const store = await openStore(context);
-      const sweep = await readStoredSweep(store, name);
+      const sweep = withAverage(await readStoredSweep(store, name), options.average);
       const along = options.along ?? mapAxes(sweep.grid.axes, Object.keys(at)).x;
       const { questions, status } = await followedQuestions(context, store, sweep, options, at);
       const curves = curvesOf(await readSamples(store, sweep, quantity, { questions, at, average: options.average }), along);

@@ -10,7 +10,7 @@ import { mapDocument, mapRows, mapText, readMapView, writeMapFigures } from '../
 import { averageOption, type AverageOption, collect, parsePlace, storeOption, verb } from '../options.js';
 import { print } from '../print.js';
 import { runVerb } from '../run-verb.js';
-import { readStoredSweep } from '../stored-sweep.js';
+import { readStoredSweep, withAverage } from '../stored-sweep.js';
 
 interface MapOptions extends BoundaryOptions, FollowUpOptions, AverageOption {
   readonly field: string;
@@ -39,7 +39,7 @@ export function mapCommand(program: Command, io: Io): void {
       const choice = boundaryChoice(options);
       const at = parsePlace('--at', options.at);
       const store = await openStore(context);
-      const sweep = await readStoredSweep(store, name);
+      const sweep = withAverage(await readStoredSweep(store, name), options.average);
       const { questions, status } = await followedQuestions(context, store, sweep, options, at);
       const chosen = mapAxes(sweep.grid.axes, Object.keys(at));
       const view = await readMapView(
