@@ -112,7 +112,7 @@ const sparse = (name, rounds, make) =>
 function tridiagonal(n) {
   return {
     name: `tridiagonal ${n}`,
-    rounds: 1,
+    rounds: 3,
     aim: 0.1,
     prepare() {
       const stream = randomStream(n, 'tridiagonal');
