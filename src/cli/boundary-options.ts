@@ -5,7 +5,8 @@ import { curvesOf, groupBy } from '../analysis/curves.js';
 import { findQuantity, ORDER_PARAMETERS, type Quantity } from '../analysis/quantities.js';
 import type { Sample } from '../analysis/samples.js';
 import type { Json } from '../core/json.js';
-import { coordinatesText, formatNumber, scheduleText } from '../report/format.js';
+import { coordinatesText, formatNumber } from '../report/format.js';
+import { questionTitles } from '../report/labels.js';
 import { renderTable } from '../report/table.js';
 import { parseNumber } from './options.js';
 
@@ -64,13 +65,12 @@ function bracketText({ bracket, outcome }: Boundary): string {
 /** One row a place, one column a question: brackets side by side. */
 export function boundaryOverview(boundaries: readonly Boundary[]): string {
   const questions = new Map(boundaries.map(({ questionOrdinal, question }) => [questionOrdinal, question]));
-  const names = [...questions.values()].map(({ schedule }) => scheduleText(schedule));
-  const repeated = new Set(names).size < names.length;
+  const titles = questionTitles([...questions.values()]);
   const places = [...groupBy(boundaries, ({ at }) => JSON.stringify(at)).values()];
   return renderTable(places, [
     { title: 'at', value: ([first]) => coordinatesText(first.at) },
-    ...[...questions].map(([ordinal, question]) => ({
-      title: scheduleText(question.schedule) + (repeated ? `; K ${question.budget}` : ''),
+    ...[...questions.keys()].map((ordinal, index) => ({
+      title: titles[index] ?? '',
       value: (place: readonly Boundary[]) => {
         const found = place.find(({ questionOrdinal }) => questionOrdinal === ordinal);
         return found ? bracketText(found) : '–';
@@ -81,9 +81,11 @@ export function boundaryOverview(boundaries: readonly Boundary[]): string {
 
 /** One row a boundary, with what was left out and why. */
 export function boundaryTable(boundaries: readonly Boundary[]): string {
-  const several = new Set(boundaries.map(({ questionOrdinal }) => questionOrdinal)).size > 1;
+  const questions = new Map(boundaries.map(({ questionOrdinal, question }) => [questionOrdinal, question]));
+  const all = questionTitles([...questions.values()]);
+  const titles = new Map([...questions.keys()].map((ordinal, index) => [ordinal, all[index] ?? '']));
   return renderTable(boundaries, [
-    ...(several ? [{ title: 'schedule', value: ({ question }: Boundary) => scheduleText(question.schedule) }] : []),
+    ...(questions.size > 1 ? [{ title: 'schedule', value: ({ questionOrdinal }: Boundary) => titles.get(questionOrdinal) ?? '' }] : []),
     { title: 'at', value: ({ at }) => coordinatesText(at) },
     {
       title: 'bracket',
@@ -99,6 +101,7 @@ export const BOUNDARY_COLUMNS = [
   'question',
   'schedule',
   'budget',
+  'efficiency',
   'at',
   'outcome',
   'low',
@@ -121,6 +124,7 @@ export function boundaryRow({ bracket, left_out, ...boundary }: Boundary): { rea
     question: boundary.questionOrdinal,
     schedule: boundary.question.schedule,
     budget: boundary.question.budget,
+    efficiency: boundary.question.detector.efficiency,
     at: boundary.at,
     outcome: boundary.outcome,
     low: bracket?.low ?? null,

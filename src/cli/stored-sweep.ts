@@ -34,7 +34,11 @@ export async function findStoredSweep(store: ResultStore, name: string): Promise
 function notesOf(grid: Grid): string[] {
   const { spec } = grid.pointAt(0);
   const axes = new Set(grid.axes.map(({ name }) => name));
-  const fixed = Object.entries(spec.parameters).filter(([name, value]) => !axes.has(name) && value !== null);
+  const last = grid.pointAt(grid.points - 1).spec.parameters;
+  // A parameter may follow the size, such as the number of particles; then it is not the same everywhere.
+  const fixed = Object.entries(spec.parameters).filter(
+    ([name, value]) => !axes.has(name) && value !== null && JSON.stringify(last[name]) === JSON.stringify(value),
+  );
   const states = ['prepare', 'detect'].some((axis) => axes.has(axis))
     ? []
     : spec.detected === 'same'

@@ -175,9 +175,14 @@ function panelMark(figure: CutFigure, panels: readonly Panel[], panel: number, c
 }
 
 function valueScale(curves: readonly Curve[]): { type: 'linear' | 'log'; domain: [number, number] } {
-  const values = curves.flatMap(({ points }) => points.flatMap(({ value }) => (value === null ? [] : [value])));
-  const low = Math.min(...values, Infinity);
-  const high = Math.max(...values, -Infinity);
+  const known = curves.flatMap(({ points }) =>
+    points.flatMap(({ value, error }) => (value === null ? [] : [{ value, error: error ?? 0 }])),
+  );
+  const least = Math.min(...known.map(({ value }) => value), Infinity);
+  // Error bars stay inside the frame; one that reaches below zero must not keep positive values off a logarithmic scale.
+  const reach = Math.min(...known.map(({ value, error }) => value - error), Infinity);
+  const high = Math.max(...known.map(({ value, error }) => value + error), -Infinity);
+  const low = least > 0 && reach <= 0 && high / least > 1e3 ? least : reach;
   if (low > high) return { type: 'linear', domain: [0, 1] };
   if (low > 0 && high / low > 1e3) return { type: 'log', domain: [low / 1.3, high * 1.3] };
   const room = high === low ? 0.5 : 0.04 * (high - low);

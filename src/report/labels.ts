@@ -59,3 +59,15 @@ export function resolutionText(question: Question, resolution: Sample['resolutio
   if (question.detector.efficiency !== 1) parts.push(`efficiency ${formatNumber(question.detector.efficiency)}`);
   return parts.join(', ');
 }
+
+/** One title a question: its schedule, and of budget, resolution and efficiency what tells it from the others. */
+export function questionTitles(questions: readonly Question[]): string[] {
+  const parts: readonly ((question: Question) => string)[] = [
+    ({ budget }) => `K ${formatNumber(budget)}`,
+    ({ resolution: { energy } }) => `δ ${energy === 'auto' ? energy : formatNumber(energy)}`,
+    ({ resolution: { weight } }) => `ε ${weight === 'auto' ? weight : formatNumber(weight)}`,
+    ({ detector }) => `efficiency ${formatNumber(detector.efficiency)}`,
+  ];
+  const telling = parts.filter((part) => new Set(questions.map(part)).size > 1);
+  return questions.map((question) => [scheduleText(question.schedule), ...telling.map((part) => part(question))].join('; '));
+}

@@ -303,7 +303,8 @@ export function phaseDiagramSpec(figure: PhaseDiagram): Spec {
         gradientLength: PANEL.height - 50,
         gradientThickness: 14,
         tickCount: 6,
-        format: quantity.integer && high - low >= 6 ? 'd' : '~g',
+        // 'g' would write 60 as 6e+1 where steps are tens.
+        format: quantity.integer && high - low >= 6 ? 'd' : logarithmic || high >= 1e7 ? '~g' : '~r',
       },
     ],
     marks: [

@@ -6,7 +6,7 @@ import { findQuantity, type Quantity } from '../../analysis/quantities.js';
 import type { Json } from '../../core/json.js';
 import { cutFigureSpec } from '../../report/cut-figure.js';
 import { coordinatesText, formatNumber, scheduleText } from '../../report/format.js';
-import { quantityTitle } from '../../report/labels.js';
+import { quantityTitle, resolutionText } from '../../report/labels.js';
 import { renderTable } from '../../report/table.js';
 import { openStore } from '../compose.js';
 import { type Io, say } from '../context.js';
@@ -33,6 +33,7 @@ function cutRows(curves: readonly Curve[], along: string, quantity: Quantity): {
       question: questionOrdinal,
       schedule: question.schedule,
       budget: question.budget,
+      efficiency: question.detector.efficiency,
       ...at,
       [along]: x,
       [quantity.name]: value,
@@ -41,14 +42,14 @@ function cutRows(curves: readonly Curve[], along: string, quantity: Quantity): {
       state,
     })),
   );
-  return { columns: ['question', 'schedule', 'budget', ...axes, along, quantity.name, 'error', 'count', 'state'], rows };
+  return { columns: ['question', 'schedule', 'budget', 'efficiency', ...axes, along, quantity.name, 'error', 'count', 'state'], rows };
 }
 
 function cutText(curves: readonly Curve[], along: string, quantity: Quantity): string {
   return curves
-    .map(({ question, at, points }) => {
+    .map(({ question, at, points, resolution }) => {
       const place = coordinatesText(at);
-      const head = `${quantityTitle(quantity)} · ${scheduleText(question.schedule)}, budget ${question.budget}${place === '' ? '' : ` · ${place}`}`;
+      const head = `${quantityTitle(quantity)} · ${scheduleText(question.schedule)}; ${resolutionText(question, resolution)}${place === '' ? '' : ` · ${place}`}`;
       const table = renderTable(points, [
         { title: along, value: ({ x }) => (typeof x === 'number' ? formatNumber(x, 6) : x), align: 'right' },
         {

@@ -3,7 +3,8 @@ import type { Command } from 'commander';
 import { WindrowError } from '../../core/errors.js';
 import type { Json } from '../../core/json.js';
 import { flatRecord, RECORD_KEYS } from '../../report/flat-record.js';
-import { formatNumber, scheduleText, stateText } from '../../report/format.js';
+import { formatNumber, stateText } from '../../report/format.js';
+import { questionTitles } from '../../report/labels.js';
 import { renderPairs, renderTable } from '../../report/table.js';
 import { writeJsonLines } from '../../report/export.js';
 import type { CellRow } from '../../store/types.js';
@@ -72,10 +73,12 @@ function pointText(rows: readonly CellRow[]): string {
     { title: 'value', value: ({ name }) => shown(point?.[name]), align: 'right' },
     { title: 'unit', value: ({ unit }) => (unit === '1' ? '' : unit) },
   ]);
+  const titles = questionTitles(rows.map(({ question }) => question));
+  const budgets = new Set(rows.map(({ question }) => question.budget));
   const answered = renderTable(CELL_FIELDS, [
     { title: 'under a schedule', value: ({ name }) => name },
-    ...rows.map((row) => ({
-      title: `${scheduleText(row.question.schedule)}; K ${row.question.budget}`,
+    ...rows.map((row, index) => ({
+      title: `${titles[index] ?? ''}${budgets.size > 1 ? '' : `; K ${row.question.budget}`}`,
       value: ({ name }: (typeof CELL_FIELDS)[number]) => shown(row.fields?.[name]),
       align: 'right' as const,
     })),

@@ -153,7 +153,7 @@ describe('reading commands', () => {
     const csv = (await place.run('map', 'junction', '--field', 'accessible_dimension', '--format', 'csv')).out.trimEnd().split('\n');
     expect(csv).toHaveLength(25);
     expect(csv[0]).toBe(
-      'question,schedule,budget,resolution_energy,resolution_weight,size,coupling,accessible_dimension,error,count,state',
+      'question,schedule,budget,efficiency,resolution_energy,resolution_weight,size,coupling,accessible_dimension,error,count,state',
     );
     const figures = join(place.folder, 'more');
     const { err } = await place.run('map', 'junction', '--figures', figures, '--at', 'size=4', '--y', 'size');

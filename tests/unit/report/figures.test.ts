@@ -10,7 +10,7 @@ import { samplesOf } from '../../../src/analysis/samples.js';
 import { WindrowError } from '../../../src/core/errors.js';
 import { findModel } from '../../../src/models/registry.js';
 import { cutFigureSpec } from '../../../src/report/cut-figure.js';
-import { sweepLabels } from '../../../src/report/labels.js';
+import { questionTitles, sweepLabels } from '../../../src/report/labels.js';
 import { pagesOf, PANEL_LIMIT, phaseDiagramSpec } from '../../../src/report/phase-diagram.js';
 import { renderPng, renderSvg, writeFigure } from '../../../src/report/render-figure.js';
 import type { CellRow } from '../../../src/store/types.js';
@@ -171,6 +171,34 @@ describe('the cut figure', () => {
     expect(text).toContain('size 8');
     expect(text).toContain('exponential, mean 0.25; K = 2000');
     expect(text).not.toContain('(a) ');
+  });
+
+  it('has room for the error bars', () => {
+    const curves = curvesOf(samplesOf(rows, winding), 'coupling')
+      .slice(0, 1)
+      .map((curve) => ({ ...curve, points: curve.points.map((point) => ({ ...point, value: 10, error: 2 })) }));
+    const { scales } = cutFigureSpec({ curves, along: 'coupling', quantity: winding, labels, notes });
+    const [low, high] = scales?.find(({ name }) => name === 'y')?.domain as [number, number];
+    expect(low).toBeLessThan(8);
+    expect(high).toBeGreaterThan(12);
+  });
+});
+
+describe('titles of questions', () => {
+  it('name what tells questions of one schedule apart, and nothing else', () => {
+    const question = {
+      schedule: { family: 'exponential', mean: 1 },
+      resolution: { energy: 'auto', weight: 'auto' },
+      budget: 200,
+      detector: { efficiency: 1 },
+      sampling: null,
+    } as const;
+    expect(questionTitles([question])).toEqual(['exponential, mean 1']);
+    expect(questionTitles([question, { ...question, detector: { efficiency: 0.7 } }])).toEqual([
+      'exponential, mean 1; efficiency 1',
+      'exponential, mean 1; efficiency 0.7',
+    ]);
+    expect(new Set(questionTitles([question, { ...question, resolution: { energy: 0.1, weight: 'auto' } }])).size).toBe(2);
   });
 });
 
