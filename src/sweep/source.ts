@@ -67,7 +67,7 @@ export function parseSource(text: string, file: string): Source {
   const [problem] = [...document.errors, ...document.warnings];
   if (problem !== undefined) {
     const sentence = problem.code === 'MULTIPLE_DOCS' ? 'several documents in one file' : problem.message;
-    throw syntax(sentence, file, lines.linePos(problem.pos[0]).line, problem.code, allowedFor(problem.code));
+    throw syntax(sentence, file, lines.linePos(problem.pos[0]).line, excerpt(text, problem.pos[0]), allowedFor(problem.code));
   }
   visit(document, {
     Pair: (_, { key }) => {
@@ -97,6 +97,12 @@ function syntax(message: string, file: string, line: number, found: string, allo
     allowed,
     ...(cause === undefined ? {} : { cause }),
   });
+}
+
+/** What stands at an offset: the rest of its line, cut short. */
+function excerpt(text: string, offset: number): string {
+  const rest = (/^[^\r\n]*/.exec(text.slice(offset))?.[0] ?? '').trim();
+  return rest === '' ? 'the end of a line' : rest.length > 40 ? `${rest.slice(0, 39)}…` : rest;
 }
 
 const ALLOWED: Readonly<Record<string, string>> = {
