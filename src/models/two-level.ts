@@ -15,7 +15,7 @@ export const twoLevel = defineFamily<z.infer<typeof parameters>>({
   summary: 'One particle on two levels: H = −g σx + (bias/2) σz, with up = site 1 and down = site 2.',
   source: 'Quantum walks: the first detected passage time problem, Phys. Rev. E 95, 032141 (2017), DOI 10.1103/PhysRevE.95.032141',
   energyUnit: 'that of the coupling g',
-  size: { symbol: 'D', meaning: 'number of levels, always 2', minimum: 2, maximum: 2 },
+  size: { symbol: 'D', meaning: 'number of levels', minimum: 2, maximum: 2 },
   coupling: { symbol: 'g', meaning: 'tunnelling amplitude between the two levels' },
   scales: [{ name: 'g', meaning: 'the tunnelling amplitude itself', toCoupling: (value) => value }],
   parameters,

@@ -42,7 +42,10 @@ async function printEstimate(context: Context, grid: Grid): Promise<void> {
     seconds: estimate.seconds,
     sampled_points: estimate.sampled,
   };
-  const axes = grid.axes.map(({ name, values, unit }) => [`axis ${name}`, `${formatCount(values.length)} values (${unit})`] as const);
+  const axes = grid.axes.map(({ name, values, unit }) => {
+    const count = `${formatCount(values.length)} ${values.length === 1 ? 'value' : 'values'}`;
+    return [`axis ${name}`, unit === '' ? count : `${count} (${unit})`] as const;
+  });
   await print(context, {
     table: () =>
       renderPairs([
