@@ -25,7 +25,7 @@ import { sweepCommand } from './commands/sweep.js';
 import { traceCommand } from './commands/trace.js';
 import { workerCommand } from './commands/worker.js';
 import { EXIT, type Io } from './context.js';
-import { errorText } from './report-error.js';
+import { errorText, TOLD } from './report-error.js';
 
 function version(): string {
   const file = fileURLToPath(new URL('../../../package.json', import.meta.url));
@@ -74,17 +74,30 @@ function asksForJson(args: readonly string[]): boolean {
   return args.some((arg, index) => arg === '--format=json' || (arg === '--format' && args[index + 1] === 'json'));
 }
 
-/** A reader that goes away (`| head`) is no error; the command ends as if it had read everything. */
-function ignoreBrokenPipe(io: Io): void {
+/**
+ * A reader that goes away (`| head`) is no error; the command ends as if it had read everything. Output that cannot be written, as to
+ * a full disk, is told once, and the command closes what is open and fails.
+ */
+function watchOutput(io: Io): void {
   for (const stream of [io.out, io.err]) {
+    let told = false;
     stream.on('error', (error: NodeJS.ErrnoException) => {
-      if (error.code !== 'EPIPE') throw error;
+      TOLD.add(error);
+      if (error.code === 'EPIPE' || told) return;
+      told = true;
+      process.once('exit', () => {
+        process.exitCode ||= EXIT.failed;
+      });
+      if (stream === io.err) return;
+      const details = { where: 'standard output', found: error.message, allowed: 'a place that can be written' };
+      const failed = new WindrowError('report.unwritable', 'the output cannot be written', details);
+      io.err.write(`${errorText(failed, 'table')}\n`);
     });
   }
 }
 
 async function main(args: readonly string[], io: Io): Promise<void> {
-  ignoreBrokenPipe(io);
+  watchOutput(io);
   const program = buildProgram(io);
   try {
     if (args.length === 0) program.help({ error: true });

@@ -36,3 +36,6 @@ export function errorText(error: unknown, format: Format): string {
 export function exitOf(error: unknown): ExitStatus {
   return error instanceof WindrowError ? error.exit : EXIT.failed;
 }
+
+/** Errors of output streams that have been reported where the streams are watched; whoever meets them again says nothing. */
+export const TOLD = new WeakSet<object>();

@@ -9,7 +9,7 @@ import type { Command } from 'commander';
 import { createLog } from '../core/log.js';
 import { parseSetting, readSettings, type SettingName, type Settings } from '../core/settings.js';
 import { type Context, EXIT, type ExitStatus, type Format, type Io, say } from './context.js';
-import { errorText, exitOf } from './report-error.js';
+import { errorText, exitOf, TOLD } from './report-error.js';
 
 /** Options of the command line that override a setting of the same name. */
 const OVERRIDES = ['store', 'threads', 'memory', 'lanes', 'grace'] as const satisfies readonly SettingName[];
@@ -80,7 +80,8 @@ export function runVerb<Arguments extends readonly unknown[], Options extends ob
       const log = createLog({ level: settings.log_level, terminal: io.err.isTTY === true });
       process.exitCode = await action({ ...io, settings, format, log, signal: abort.signal, closers }, options, ...args);
     } catch (error) {
-      if (isBrokenPipe(error)) return;
+      // Output that cannot be written has been told where the stream is watched.
+      if (isBrokenPipe(error) || (error instanceof Error && TOLD.has(error))) return;
       io.err.write(`${errorText(error, format)}\n`);
       process.exitCode = exitOf(error);
     } finally {
