@@ -18,7 +18,7 @@ export interface ParameterDescription {
 }
 
 interface SchemaNode {
-  readonly type?: string;
+  readonly type?: string | readonly string[];
   readonly description?: string;
   readonly default?: Json;
   readonly const?: Json;
@@ -45,6 +45,7 @@ function allowedBy(node: SchemaNode): string {
   if (node.anyOf !== undefined) return node.anyOf.map(allowedBy).join(', or ');
   if (node.enum !== undefined) return node.enum.join(' | ');
   if (node.const !== undefined) return showValue(node.const);
+  if (typeof node.type === 'object') return node.type.map((type) => allowedBy({ ...node, type })).join(', or ');
   if (node.type === 'integer') return `a whole number${boundsOf(node)}`;
   if (node.type === 'number') return `a finite number${boundsOf(node)}`;
   if (node.type === 'boolean') return 'true | false';

@@ -31,9 +31,10 @@ export interface ProductDefinition<P> extends Omit<FamilyDefinition<P>, Made> {
   complex?(request: SystemRequest<P>): boolean;
   /**
    * True where sectors are far smaller than the space: the extent then counts the sector of φ by a search (at most 2^20 states)
-   * instead of taking the whole space as its bound.
+   * instead of taking the whole space as its bound. 'by coupling' where the value of the coupling, or a realisation of disorder, may
+   * take elements away.
    */
-  readonly fragmented?: boolean;
+  readonly fragmented?: true | 'by coupling';
 }
 
 const COUNTED = 2 ** 20;
@@ -83,8 +84,9 @@ export function defineProductFamily<P>(definition: ProductDefinition<P>): ModelF
       // The graph changes with an amplitude only where that vanishes; a random one is taken not to.
       canonicalJson([
         request.size,
-        request.coupling === 0,
-        request.disorder !== null,
+        ...(definition.fragmented === 'by coupling'
+          ? [request.coupling, request.disorder as unknown as Json]
+          : [request.coupling === 0, request.disorder !== null]),
         request.parameters as Json,
         support.map((label) => label.join()),
       ]),
@@ -103,7 +105,7 @@ export function defineProductFamily<P>(definition: ProductDefinition<P>): ModelF
       const whole = hilbertDimension(request, support);
       const complex = definition.complex?.(request) ?? false;
       const bound = { dimension: whole, nonzeros: definition.nonzeros?.(request) ?? whole * (1 + definition.moves(request)) };
-      const counted = definition.fragmented === true ? count(request, support()) : null;
+      const counted = definition.fragmented !== undefined ? count(request, support()) : null;
       return { hilbertDimension: whole, ...(counted ?? bound), storage: 'sparse', complex };
     },
   });

@@ -4,6 +4,7 @@ import { boseHubbardChain } from './bose-hubbard-chain.js';
 import { boseHubbardDimer } from './bose-hubbard-dimer.js';
 import { collectiveSpin } from './collective-spin.js';
 import { completeGraph } from './complete-graph.js';
+import { termList } from './custom/terms.js';
 import { dipoleSpinOneChain } from './dipole-spin-one-chain.js';
 import { eastHoppingChain } from './east-hopping-chain.js';
 import { extendedBoseHubbardChain } from './extended-bose-hubbard-chain.js';
@@ -46,6 +47,7 @@ const families: readonly ModelFamily[] = [
   pairFlipChain,
   foldedXxzChain,
   randomMatrix,
+  termList,
 ];
 
 export const modelFamilies: ReadonlyMap<string, ModelFamily> = new Map(families.map((family) => [family.name, family]));

@@ -64,7 +64,7 @@ function innermost(schema: z.ZodType): z.ZodType {
 }
 
 interface TypeNode {
-  readonly type?: string;
+  readonly type?: string | readonly string[];
   readonly enum?: readonly unknown[];
   readonly const?: unknown;
   readonly anyOf?: readonly TypeNode[];
@@ -76,10 +76,10 @@ function jsonTypes(schema: z.ZodType): Set<string> {
   const visit = (node: TypeNode): void => {
     const literals = node.enum ?? (node.const === undefined ? [] : [node.const]);
     if (literals.length > 0) types.add(literals.map((literal) => String(literal)).join(' | '));
-    else if (node.type !== undefined) types.add(node.type);
+    else if (node.type !== undefined) for (const type of [node.type].flat()) types.add(type);
     for (const branch of node.anyOf ?? node.oneOf ?? []) visit(branch);
   };
-  visit(z.toJSONSchema(schema, { io: 'input', unrepresentable: 'any' }) as TypeNode);
+  visit(z.toJSONSchema(schema, { io: 'input', unrepresentable: 'any' }));
   return types;
 }
 

@@ -13,6 +13,7 @@ import type { RawRequest } from '../../src/models/request.js';
 import type { ModelFamily } from '../../src/models/types.js';
 import { densePlanes, levelsOf, referenceMeasure } from '../support/exact-spectrum.js';
 import { systemOf } from '../support/model-requests.js';
+import { hermitianTermRequests } from '../support/term-lists.js';
 
 const energy = fc.double({ min: -3, max: 3, noNaN: true });
 const geometry = fc.constantFrom('ring', 'line');
@@ -74,6 +75,7 @@ const requests: Record<string, fc.Arbitrary<RawRequest>> = {
       detected: fc.constantFrom('same', 'all-right'),
     }),
   ),
+  terms: hermitianTermRequests,
 };
 
 const normOf = ({ re, im }: StateVector): number => Math.sqrt([...re, ...(im ?? [])].reduce((sum, x) => sum + x * x, 0));
