@@ -109,6 +109,10 @@ describe('the reader', () => {
     expect(seen.out.length).toBeGreaterThan(50);
   });
 
+  it.each(['phase_cell', 'boundary_input'])('sees the view %s', async (view) => {
+    expect((await ask('looking', `select * from windrow.${view} where sweep = 'two-level-line'`)).rowCount).toBe(30);
+  });
+
   it('cannot compute, and is told why', async () => {
     writeFileSync(join(folder, 'other.yaml'), TWO_LEVEL_SWEEP.replace('two-level-line', 'another-line'));
     const refused = await as('looking', 'sweep', join(folder, 'other.yaml'));
@@ -120,6 +124,8 @@ describe('the reader', () => {
     "insert into windrow.failure (point_id, code, message) select id, 'x', 'x' from windrow.point",
     "update windrow.sweep set state = 'stopping'",
     'delete from windrow.failure',
+    "insert into windrow.phase_cell (sweep) values ('x')",
+    'drop view windrow.boundary_input',
   ])('cannot: %s', async (statement) => {
     await expect(ask('looking', statement)).rejects.toMatchObject({ code: INSUFFICIENT_PRIVILEGE });
   });

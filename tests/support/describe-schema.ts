@@ -1,4 +1,4 @@
-/** The schema of a database as text: every table with its columns, constraints and indexes, in a fixed order. */
+/** The schema of a database as text: every table with its columns, constraints and indexes, every view with its columns, in a fixed order. */
 import type { TestDatabase } from './database.js';
 
 export async function describeSchema(database: TestDatabase): Promise<string> {
@@ -29,5 +29,11 @@ export async function describeSchema(database: TestDatabase): Promise<string> {
     const body = [...columns, ...constraints].map(({ line }) => `  ${line}`).join(',\n');
     parts.push([`create table ${table} (\n${body}\n);`, ...indexes.map(({ line }) => line)].join('\n'));
   }
+  const views = await database.query<{ name: string; columns: string }>(
+    `select c.relname as name, string_agg('  ' || a.attname || ' ' || format_type(a.atttypid, a.atttypmod), E',\\n' order by a.attnum) as columns
+     from pg_class c join pg_attribute a on a.attrelid = c.oid and a.attnum > 0
+     where c.relnamespace = 'windrow'::regnamespace and c.relkind = 'v' group by 1 order by 1`,
+  );
+  parts.push(...views.map(({ name, columns }) => `view windrow.${name} (\n${columns}\n);`));
   return `${parts.join('\n\n')}\n`;
 }
