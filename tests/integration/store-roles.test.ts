@@ -124,7 +124,6 @@ describe('the reader', () => {
     "insert into windrow.failure (point_id, code, message) select id, 'x', 'x' from windrow.point",
     "update windrow.sweep set state = 'stopping'",
     'delete from windrow.failure',
-    "insert into windrow.phase_cell (sweep) values ('x')",
     'drop view windrow.boundary_input',
   ])('cannot: %s', async (statement) => {
     await expect(ask('looking', statement)).rejects.toMatchObject({ code: INSUFFICIENT_PRIVILEGE });

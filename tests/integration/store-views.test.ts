@@ -1,7 +1,6 @@
 /** The views of the store: the same rows as `export`, and the same order parameters as the analysis, whatever became of a cell. */
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 import { ORDER_PARAMETERS } from '../../src/analysis/quantities.js';
-import type { Json } from '../../src/core/json.js';
 import { flatRecord, RECORD_KEYS } from '../../src/report/flat-record.js';
 import type { CellRow } from '../../src/store/types.js';
 import { createDatabase, type TestDatabase } from '../support/database.js';
@@ -64,7 +63,7 @@ describe('phase_cell', () => {
     expect(rows).toHaveLength(12);
     rows.forEach((row, index) => {
       const record = flatRecord(cells[index], 'views');
-      for (const key of RECORD_KEYS) expect([key, key === 'ordinal' ? Number(row[key]) : row[key]]).toEqual([key, record[key] as Json]);
+      for (const key of RECORD_KEYS) expect([key, key === 'ordinal' ? Number(row[key]) : row[key]]).toEqual([key, record[key]]);
     });
     expect(new Set(rows.map((row) => row['status']))).toEqual(new Set(['computed', 'failed', 'missing']));
     expect(rows[0]['flags']).toEqual(['underresolved', 'doubtful', 'resolution-sensitive']);

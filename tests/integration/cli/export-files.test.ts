@@ -102,15 +102,16 @@ describe('export --as', () => {
     });
     const twice = await place.run('export', 'two-level-line', '--as', 'csv', '--format', 'json', '--output', join(place.folder, 'x'));
     expect(twice).toMatchObject({ status: 2, err: expect.stringContaining('--format') });
-    for (const kind of ['parquet', 'npz', 'csv']) {
+    for (const kind of ['parquet', 'npz']) {
       const path = join(place.folder, 'no-such-folder', `x.${kind}`);
       const refused = await place.run('export', 'two-level-line', '--as', kind, '--output', path);
       expect(refused).toMatchObject({ status: 1, err: expect.stringContaining('report.unwritable') });
       expect(refused.err).toContain(path);
-      if (existsSync('/dev/full')) {
-        const full = await place.run('export', 'two-level-line', '--as', kind, '--output', '/dev/full');
-        expect(full).toMatchObject({ status: 1, err: expect.stringContaining('ENOSPC') });
-      }
     }
+  });
+
+  it.runIf(existsSync('/dev/full'))('fails in words on a full disk', async () => {
+    const full = await place.run('export', 'two-level-line', '--as', 'parquet', '--output', '/dev/full');
+    expect(full).toMatchObject({ status: 1, err: expect.stringContaining('ENOSPC') });
   });
 });
