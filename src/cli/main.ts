@@ -18,6 +18,7 @@ import { migrateCommand } from './commands/migrate.js';
 import { pointCommand } from './commands/point.js';
 import { recheckCommand } from './commands/recheck.js';
 import { resumeCommand } from './commands/resume.js';
+import { scalingCommand } from './commands/scaling.js';
 import { sectorsCommand } from './commands/sectors.js';
 import { statusCommand } from './commands/status.js';
 import { stopCommand } from './commands/stop.js';
@@ -56,6 +57,7 @@ function buildProgram(io: Io): Command {
     mapCommand,
     cutCommand,
     boundaryCommand,
+    scalingCommand,
     traceCommand,
     compareCommand,
     recheckCommand,

@@ -175,6 +175,16 @@ describe('reading commands', () => {
     for (const line of steepest.out.trimEnd().split('\n').slice(1)) expect(line).toContain(',bracket,0.2,0.25,0.3,0.5,1,');
   });
 
+  it('scaling of three sizes is too few, in every format, and that is no failure', async () => {
+    const args = ['scaling', 'junction', '--boundary', 'effective_dimension', '--level', '60%'];
+    const { status, out } = await place.run(...args, '--format', 'json');
+    expect(status).toBe(0);
+    expect(JSON.parse(out)).toMatchObject([{ outcome: 'too few sizes', limit: null, exponent: null }]);
+    expect((await place.run(...args)).out).toContain('too few sizes');
+    expect((await place.run(...args, '--format', 'csv')).out).toContain(',too few sizes,');
+    expect(await place.run('scaling', 'junction', '--along', 'size')).toMatchObject({ status: 2, out: '' });
+  });
+
   it('cut runs along the coupling at one size, and along the size at one coupling', async () => {
     const along = JSON.parse((await place.run('cut', 'junction', '--at', 'size=4', '--format', 'json')).out) as Record_[];
     expect(along.map(({ coupling }) => coupling)).toEqual([0.5, 1, 1.5, 2, 2.5, 3, 3.5, 4]);
