@@ -10,7 +10,7 @@ import { renderTerminalMap } from '../report/terminal-map.js';
 import type { ResultStore } from '../store/types.js';
 import { boundariesOf, type BoundaryChoice } from './boundary-options.js';
 import type { Context } from './context.js';
-import { readSamples, type Selection, type StoredSweep } from './stored-sweep.js';
+import { readSamples, REFINED_AXIS, type Selection, type StoredSweep } from './stored-sweep.js';
 
 export interface MapView {
   readonly sweep: StoredSweep;
@@ -40,7 +40,7 @@ export async function readMapView(
   // Boundaries run along x, whatever the axis; along words or a single value there is none.
   const places = valuesOf(axes.x);
   const along = places.length > 1 && places.every((value) => typeof value === 'number');
-  const measured = along ? await readSamples(store, sweep, choice.quantity, selection) : [];
+  const measured = along ? await readSamples(store, sweep, choice.quantity, { ...selection, refined: axes.x === REFINED_AXIS }) : [];
   return { sweep, quantity, maps, choice, axes, boundaries: measured.length === 0 ? [] : boundariesOf(measured, choice, axes.x) };
 }
 

@@ -48,7 +48,11 @@ function bar(): ProgressView {
         notes: notes(status),
       };
       if (!started) view.start(status.cells, status.storedCells, payload);
-      else view.update(status.storedCells, payload);
+      else {
+        // A refinement adds to what is to be done.
+        view.setTotal(status.cells);
+        view.update(status.storedCells, payload);
+      }
       started = true;
     },
     close() {

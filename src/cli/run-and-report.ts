@@ -6,12 +6,13 @@ import type { Json } from '../core/json.js';
 import { formatCount, formatSeconds } from '../report/format.js';
 import { renderPairs, renderTable } from '../report/table.js';
 import type { ResultStore } from '../store/types.js';
-import { boundaryChoice, boundaryOverview, boundaryRow } from './boundary-options.js';
+import { type BoundaryChoice, boundaryChoice, boundaryOverview, boundaryRow } from './boundary-options.js';
 import { memoryLimit, openWorkers, storeText } from './compose.js';
 import { type Context, EXIT, type ExitStatus, say } from './context.js';
 import { type MapView, mapText, readMapView, writeMapFigures } from './map-view.js';
 import { print } from './print.js';
 import { progressView } from './progress.js';
+import { refinementOf, refinementText } from './refine.js';
 import { readStoredSweep } from './stored-sweep.js';
 
 /** Maps that the report puts on the terminal; schedules often differ little there, and the figures have all panels. */
@@ -128,19 +129,32 @@ function statusOf({ outcome, failed }: SweepSummary): ExitStatus {
 
 const SUMMARY_COLUMNS = ['sweep', 'outcome', 'points', 'cells', 'computed', 'reused', 'failed', 'seconds', 'cells_per_second'] as const;
 
-/** Prints the summary and, where asked, the report; returns the exit status. */
-export async function finish(context: Context, store: ResultStore, summary: SweepSummary, { report }: RunOptions): Promise<ExitStatus> {
+/** Prints the summary and, where asked, what a refinement took and the report; returns the exit status. */
+export async function finish(
+  context: Context,
+  store: ResultStore,
+  summary: SweepSummary,
+  { report }: RunOptions,
+  refined: { readonly choice: BoundaryChoice; readonly width: number } | null = null,
+): Promise<ExitStatus> {
   const { shares, failures, ...counts } = summary;
   const flat = { ...counts, cells_per_second: rate(summary) };
   context.log.info({ sweep: summary.sweep, outcome: summary.outcome, shares }, 'sweep ended');
   if (report !== undefined && summary.outcome === 'done') say(context, `windrow: drawing figures into ${report}`);
   const made = report === undefined || summary.outcome !== 'done' ? null : await makeReport(store, summary.sweep, report);
+  const refinement =
+    refined === null || summary.outcome !== 'done' ? null : await refinementOf(store, summary.sweep, refined.choice, refined.width);
   await print(context, {
     table: async () =>
-      [summaryText(context, summary), ...(made && report !== undefined ? [await reportText(context, made, report)] : [])].join('\n\n'),
+      [
+        summaryText(context, summary),
+        ...(refined && refinement ? [refinementText(refinement, refined.choice)] : []),
+        ...(made && report !== undefined ? [await reportText(context, made, report)] : []),
+      ].join('\n\n'),
     json: () => ({
       ...flat,
       failures: failures as Json,
+      ...(refinement ? { refinement: { ...refinement } } : {}),
       ...(made ? { boundaries: made.view.boundaries.map(boundaryRow), figures: made.figures } : {}),
     }),
     csv: () => ({ columns: SUMMARY_COLUMNS, rows: [flat] }),

@@ -7,7 +7,7 @@ import { samplesAt } from '../analysis/cut.js';
 import { findModel } from '../models/registry.js';
 import { stateText } from '../report/format.js';
 import { type SweepLabels, sweepLabels } from '../report/labels.js';
-import type { ResultStore, SweepRecord } from '../store/types.js';
+import type { CellRow, ResultStore, SweepRecord } from '../store/types.js';
 import { expandGrid } from '../sweep/grid.js';
 import { documentFromJson } from '../sweep/read.js';
 import type { Grid } from '../sweep/types.js';
@@ -81,7 +81,16 @@ export interface Selection {
   readonly at?: Coordinates;
   /** How disorder realisations are averaged; the mean when absent. */
   readonly average?: Average | undefined;
+  /** Also the points that a refinement put between those of the grid; they stand on no axis, so maps and cuts go without. */
+  readonly refined?: boolean;
 }
+
+async function* onGrid(rows: AsyncIterable<CellRow>, points: number): AsyncGenerator<CellRow> {
+  for await (const row of rows) if (row.ordinal < points) yield row;
+}
+
+/** The axis that refinements put points on. */
+export const REFINED_AXIS = 'coupling';
 
 /**
  * Samples of one quantity, streamed from the store.
@@ -91,9 +100,9 @@ export async function readSamples(
   store: ResultStore,
   sweep: StoredSweep,
   quantity: Quantity,
-  { questions, at = {}, average = 'mean' }: Selection,
+  { questions, at = {}, average = 'mean', refined = false }: Selection,
 ): Promise<Sample[]> {
   const rows = store.cells({ sweep: sweep.grid.name, ...(questions === undefined ? {} : { questions }) });
-  const samples = samplesAt(await collectSamples(rows, quantity), at);
+  const samples = samplesAt(await collectSamples(refined ? rows : onGrid(rows, sweep.grid.points), quantity), at);
   return average === 'mean' ? samples : samples.map((sample) => ({ ...sample, average }));
 }

@@ -102,7 +102,8 @@ export async function followUp({
     counts.computed += cells.length;
     counts.measures += outcomes.filter((outcome) => outcome.cells.length > 0).length;
     for (const { failure } of outcomes) if (failure !== null) note(failures, failure);
-    onProgress?.({ ...counts, total });
+    // Refined points come on top of the grid's.
+    onProgress?.({ ...counts, total: Math.max(total, counts.cells) });
   };
 
   const bundles = bundler(async (bundle) => {

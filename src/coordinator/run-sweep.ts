@@ -2,6 +2,7 @@
  * Runs a sweep to its end: registers it, hands out what is missing, follows it, and says what became of it.
  *
  * Guarantees:
+ * - Points that a refinement added to the sweep belong to it like those of its grid.
  * - Only missing cells are computed; running a finished sweep again changes nothing, so resuming is running.
  * - One process at a time hands out a sweep's jobs (a named lock of the store). Any other follows, and takes over when the lock is free
  *   and something is still missing: every process may die, or run twice.
@@ -18,6 +19,7 @@ import { isRetryable, pause, withRetry } from '../core/retry.js';
 import type { ComputePool, Delivery, Job } from '../queue/types.js';
 import type { SweepProgress } from '../store/types.js';
 import { METHOD_VERSION } from '../sweep/identity.js';
+import { refinedGrid } from '../sweep/refined-grid.js';
 import { feedUntilComplete } from './feed-until-complete.js';
 import { runDelivery } from './run-delivery.js';
 import { trackProgress } from './track-progress.js';
@@ -33,9 +35,10 @@ const STARTS = 3;
 type Halt = 'interrupted' | 'stopped' | Error;
 
 export async function runSweep(run: SweepRun): Promise<SweepSummary> {
-  const { grid, store, queue, pool } = run;
+  const { store, queue, pool } = run;
   const begun = performance.now();
   await openSweep(run);
+  const grid = refinedGrid(run.grid, await withRetry(() => store.refinements(run.grid.name)));
 
   const halted = new AbortController();
   const halt = (reason: Halt): void => halted.abort(reason);

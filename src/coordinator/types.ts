@@ -5,6 +5,7 @@ import type { ResultStore, SweepProgress } from '../store/types.js';
 import type { Grid } from '../sweep/types.js';
 
 export interface SweepRun {
+  /** that of the sweep file; refined points are the store's to say */
   readonly grid: Grid;
   /** the normalised sweep document that `grid` was expanded from */
   readonly document: Json;

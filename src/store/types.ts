@@ -19,6 +19,7 @@ export interface SweepRecord {
   /** the sweep file, normalised; enough to expand the grid again */
   readonly document: Json;
   readonly methodVersion: string;
+  /** of the document's grid, without refined points */
   readonly points: number;
   /** what the sweep is made of: every point of it answers them */
   readonly questions: readonly QuestionRecord[];
@@ -102,6 +103,11 @@ export interface ResultStore {
   followUp(sweep: string, questions: readonly Omit<QuestionRecord, 'ordinal'>[]): Promise<readonly QuestionRecord[]>;
   /** Enrols grid points in a sweep (idempotent) and tells what of them is missing. */
   enrol(sweep: string, points: readonly GridPoint[]): Promise<readonly MissingPoint[]>;
+  /**
+   * Points enrolled beyond the grid of the sweep's document: those with an ordinal of at least its `points`, by ordinal. Progress counts
+   * them. @throws sweep.unknown
+   */
+  refinements(sweep: string): Promise<readonly GridPoint[]>;
   /** Stored measures by point id; ids that are not stored are absent. */
   measures(ids: readonly string[]): Promise<ReadonlyMap<string, MeasuredPoint>>;
   /** One transaction; see the guarantees above. A saved point clears its failure. */

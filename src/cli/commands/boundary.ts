@@ -17,7 +17,7 @@ import { followedQuestions, type FollowUpOptions, followUpOptions } from '../fol
 import { averageOption, type AverageOption, collect, parsePlace, storeOption, verb } from '../options.js';
 import { print } from '../print.js';
 import { runVerb } from '../run-verb.js';
-import { readSamples, readStoredSweep } from '../stored-sweep.js';
+import { readSamples, readStoredSweep, REFINED_AXIS } from '../stored-sweep.js';
 
 interface Options extends BoundaryOptions, FollowUpOptions, AverageOption {
   readonly along?: string;
@@ -37,8 +37,13 @@ export function boundaryCommand(program: Command, io: Io): void {
       const store = await openStore(context);
       const sweep = await readStoredSweep(store, name);
       const { questions, status } = await followedQuestions(context, store, sweep, options, at);
-      const samples = await readSamples(store, sweep, choice.quantity, { questions, at, average: options.average });
       const along = options.along ?? mapAxes(sweep.grid.axes, Object.keys(at)).x;
+      const samples = await readSamples(store, sweep, choice.quantity, {
+        questions,
+        at,
+        average: options.average,
+        refined: along === REFINED_AXIS,
+      });
       requireAxis(samples, along);
       const boundaries = boundariesOf(samples, choice, along);
       await print(context, {

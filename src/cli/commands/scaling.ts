@@ -13,7 +13,7 @@ import { followedQuestions, type FollowUpOptions, followUpOptions } from '../fol
 import { collect, parsePlace, storeOption, verb } from '../options.js';
 import { print } from '../print.js';
 import { runVerb } from '../run-verb.js';
-import { readSamples, readStoredSweep } from '../stored-sweep.js';
+import { readSamples, readStoredSweep, REFINED_AXIS } from '../stored-sweep.js';
 
 interface Options extends BoundaryOptions, FollowUpOptions {
   readonly along: string;
@@ -138,7 +138,7 @@ export function scalingCommand(program: Command, io: Io): void {
       const store = await openStore(context);
       const sweep = await readStoredSweep(store, name);
       const { questions, status } = await followedQuestions(context, store, sweep, options, at);
-      const samples = await readSamples(store, sweep, choice.quantity, { questions, at });
+      const samples = await readSamples(store, sweep, choice.quantity, { questions, at, refined: along === REFINED_AXIS });
       requireAxis(samples, along);
       const scalings = scalingsOf(boundariesOf(samples, choice, along));
       const caption =

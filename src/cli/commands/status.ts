@@ -21,12 +21,12 @@ interface Options {
 
 interface Entry {
   readonly record: SweepRecord;
-  readonly cells: number;
+  /** counts the points of refinements, which the record does not */
   readonly progress: SweepProgress;
 }
 
 async function entryOf(store: ResultStore, record: SweepRecord): Promise<Entry> {
-  return { record, cells: record.points * record.questions.length, progress: await store.progress(record.name) };
+  return { record, progress: await store.progress(record.name) };
 }
 
 const COLUMNS = [
@@ -42,12 +42,12 @@ const COLUMNS = [
   'updated',
 ] as const;
 
-function rowOf({ record, cells, progress }: Entry): { readonly [key in (typeof COLUMNS)[number]]: Json } {
+function rowOf({ record, progress }: Entry): { readonly [key in (typeof COLUMNS)[number]]: Json } {
   return {
     sweep: record.name,
     state: record.state,
-    points: record.points,
-    cells,
+    points: progress.points,
+    cells: progress.cells,
     stored_points: progress.storedPoints,
     stored_cells: progress.storedCells,
     failed_points: progress.failedPoints,
@@ -65,8 +65,8 @@ async function printList(context: Context, entries: readonly Entry[]): Promise<v
         : renderTable(entries, [
             { title: 'sweep', value: ({ record }) => record.name },
             { title: 'state', value: ({ record }) => record.state },
-            { title: 'points', value: ({ record }) => formatCount(record.points), align: 'right' },
-            { title: 'cells', value: ({ cells }) => formatCount(cells), align: 'right' },
+            { title: 'points', value: ({ progress }) => formatCount(progress.points), align: 'right' },
+            { title: 'cells', value: ({ progress }) => formatCount(progress.cells), align: 'right' },
             { title: 'stored', value: ({ progress }) => formatCount(progress.storedCells), align: 'right' },
             { title: 'failed points', value: ({ progress }) => formatCount(progress.failedPoints), align: 'right' },
             { title: 'updated', value: ({ record }) => record.updated },
@@ -76,12 +76,12 @@ async function printList(context: Context, entries: readonly Entry[]): Promise<v
   });
 }
 
-function detailText({ record, cells, progress }: Entry): string {
+function detailText({ record, progress }: Entry): string {
   const pairs = renderPairs([
     ['sweep', record.name],
     ['state', record.state],
-    ['points', `${formatCount(progress.storedPoints)} of ${formatCount(record.points)} stored`],
-    ['cells', `${formatCount(progress.storedCells)} of ${formatCount(cells)} stored`],
+    ['points', `${formatCount(progress.storedPoints)} of ${formatCount(progress.points)} stored`],
+    ['cells', `${formatCount(progress.storedCells)} of ${formatCount(progress.cells)} stored`],
     ['failed', `${formatCount(progress.failedPoints)} points`],
     ['created', record.created],
     ['updated', record.updated],

@@ -1,6 +1,8 @@
 /** `windrow sweep FILE`: computes every cell of a sweep file that the store does not hold yet. */
 import type { Command } from 'commander';
+import { WindrowError } from '../../core/errors.js';
 import type { Json } from '../../core/json.js';
+import { refineSweep } from '../../coordinator/refine-sweep.js';
 import { openSweep, runSweep } from '../../coordinator/run-sweep.js';
 import { formatBytes, formatCount, formatNumber, formatSeconds } from '../../report/format.js';
 import { renderPairs } from '../../report/table.js';
@@ -11,12 +13,15 @@ import { readSweepFile } from '../../sweep/read-file.js';
 import type { Grid } from '../../sweep/types.js';
 import { memoryLimit, openCluster, openStore, tellIfAlone, threadCount } from '../compose.js';
 import { type Context, EXIT, type ExitStatus, type Io } from '../context.js';
+import { boundaryChoice, boundaryOptions, type BoundaryOptions } from '../boundary-options.js';
+import { refinementWidth, wantedPlaces } from '../refine.js';
 import { computeOptions, storeOption, verb } from '../options.js';
 import { print } from '../print.js';
 import { runVerb } from '../run-verb.js';
 import { finish, runWith } from '../run-and-report.js';
 
-interface Options {
+interface Options extends BoundaryOptions {
+  readonly refine?: string;
   readonly estimate?: boolean;
   readonly report?: string;
   readonly allowLarge?: boolean;
@@ -82,6 +87,18 @@ async function detach(context: Context, grid: Grid, document: Json): Promise<Exi
   return EXIT.done;
 }
 
+/** @throws WindrowError `cli.usage` */
+function refinementAsked(options: Options) {
+  if (options.refine === undefined) return null;
+  if (options.detach === true)
+    throw new WindrowError('cli.usage', 'a refinement needs the results of each round', {
+      where: '--refine',
+      found: 'with --detach',
+      allowed: 'one of the two',
+    });
+  return { choice: boundaryChoice(options), width: refinementWidth(options.refine) };
+}
+
 export function sweepCommand(program: Command, io: Io): void {
   const command = verb(program, 'sweep', 'compute a sweep file; cells that are in the store already are reused')
     .argument('<file>', 'sweep file, YAML or JSON')
@@ -89,20 +106,29 @@ export function sweepCommand(program: Command, io: Io): void {
     .option('--report <folder>', 'afterwards show phase diagram and boundary, and write figures there')
     .option('--certify', 'count accessible dimensions exactly, by modular arithmetic; the same as `certify: true` in the file')
     .option('--allow-large', 'accept a grid above two million cells')
+    .option(
+      '--refine <boundary:width>',
+      'then halve the brackets of the boundary along the coupling by new points until they are this narrow',
+    )
     .option('--detach', 'leave the sweep to the workers of a cluster and return at once');
-  storeOption(computeOptions(command)).action(
+  storeOption(computeOptions(boundaryOptions(command))).action(
     runVerb<[string], Options>(io, { drains: true }, async (context, options, file) => {
       const read = readSweepFile(file, { allowLarge: options.allowLarge === true });
       const document: SweepDocument = options.certify === true ? { ...read, certify: true } : read;
       const grid = expandGrid(document);
+      const refined = refinementAsked(options);
       if (options.estimate === true) {
         await printEstimate(context, grid);
         return EXIT.done;
       }
       if (options.detach === true) return detach(context, grid, document as unknown as Json);
       const store = await openStore(context);
-      const summary = await runWith(context, store, options, (run) => runSweep({ ...run, grid, document: document as unknown as Json }));
-      return finish(context, store, summary, options);
+      const summary = await runWith(context, store, options, (settings) => {
+        const run = { ...settings, grid, document: document as unknown as Json };
+        if (refined === null) return runSweep(run);
+        return refineSweep(run, () => wantedPlaces(store, grid.name, refined.choice, refined.width));
+      });
+      return finish(context, store, summary, options, refined);
     }),
   );
 }

@@ -2,7 +2,7 @@
 import type { ClientBase } from 'pg';
 import { WindrowError } from '../../core/errors.js';
 import type { Json } from '../../core/json.js';
-import type { GridPoint, QuestionRecord } from '../../sweep/types.js';
+import type { GridPoint, PointSpec, QuestionRecord } from '../../sweep/types.js';
 import type { MissingPoint, NewSweep, SweepProgress, SweepRecord } from '../types.js';
 import { id, ids } from './encoding.js';
 import { idColumn, inserter, integerColumn, jsonColumn, sortedBy, textColumn } from './insert.js';
@@ -154,19 +154,40 @@ export async function enrol(client: ClientBase, sweep: string, points: readonly 
     }));
 }
 
+/** @throws sweep.unknown */
+export async function readRefinements(client: ClientBase, sweep: string): Promise<readonly GridPoint[]> {
+  await requireSweep(client, sweep);
+  const { rows } = await client.query<{ id: string; ordinal: number; spec: string; coordinates: string }>(
+    `select encode(p.id, 'hex') as id, sp.ordinal, p.spec, sp.coordinates
+     from windrow.sweep s join windrow.sweep_point sp on sp.sweep = s.name and sp.ordinal >= s.points
+     join windrow.point p on p.id = sp.point_id
+     where s.name = $1 order by sp.ordinal`,
+    [sweep],
+  );
+  return rows.map(({ id: pointId, ordinal, spec, coordinates }) => ({
+    id: pointId,
+    ordinal,
+    spec: JSON.parse(spec) as PointSpec,
+    coordinates: JSON.parse(coordinates) as GridPoint['coordinates'],
+  }));
+}
+
 /** Groups of failures told apart in a progress report, the most frequent first. */
 const FAILURE_GROUPS = 50;
 
 /** @throws sweep.unknown */
 export async function readProgress(client: ClientBase, sweep: string): Promise<SweepProgress> {
   const counts = await client.query<Omit<SweepProgress, 'failures'>>(
-    `select s.points, s.points * (select count(*) from windrow.sweep_question where sweep = s.name) as cells,
+    `select e.points, e.points * (select count(*) from windrow.sweep_question where sweep = s.name) as cells,
        (select count(*) from windrow.sweep_point sp join windrow.measure m using (point_id) where sp.sweep = s.name) as "storedPoints",
        (select count(*) from windrow.sweep_point sp join windrow.cell c using (point_id)
           join windrow.sweep_question sq on sq.sweep = sp.sweep and sq.question_id = c.question_id
         where sp.sweep = s.name) as "storedCells",
        (select count(*) from windrow.sweep_point sp join windrow.failure f using (point_id) where sp.sweep = s.name) as "failedPoints"
-     from windrow.sweep s where s.name = $1`,
+     from windrow.sweep s cross join lateral (
+       select s.points + count(*) as points from windrow.sweep_point sp where sp.sweep = s.name and sp.ordinal >= s.points
+     ) e
+     where s.name = $1`,
     [sweep],
   );
   const [row] = counts.rows;
