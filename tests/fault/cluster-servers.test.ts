@@ -6,6 +6,7 @@ import { spawnSync } from 'node:child_process';
 import { afterAll, afterEach, beforeAll, describe, expect, it } from 'vitest';
 import { runDelivery } from '../../src/coordinator/run-delivery.js';
 import { openBullMqQueue } from '../../src/queue/bullmq/bullmq-queue.js';
+import { isAlive } from '../../src/store/embedded/processes.js';
 import { openPostgresStore } from '../../src/store/postgres/postgres-store.js';
 import { costlySweep, openCluster, undisturbed, type Cluster, type SweepFile } from '../support/cluster.js';
 import { inlinePool } from '../support/inline-pool.js';
@@ -13,19 +14,28 @@ import { ownPostgres, type OwnPostgres } from '../support/services.js';
 import { rowsOf } from '../support/sweeps.js';
 
 /** The two ends of a cable between this network and another one; a process there reaches our servers by the first address. */
-const NETWORK = { name: `windrow-${String(process.pid)}`, ours: '10.213.77.1', theirs: '10.213.77.2' };
+const subnet = `10.213.${String(process.pid % 250)}`;
+const NETWORK = { name: `windrow-${String(process.pid)}`, link: `wr${String(process.pid)}`, ours: `${subnet}.1`, theirs: `${subnet}.2` };
 const CUT_MS = 15_000;
 
 const ip = (...args: string[]): boolean => spawnSync('ip', args, { stdio: 'ignore' }).status === 0;
 
+/** Networks of runs that were killed; their cables go with them. */
+function clearAbandoned(): void {
+  const listed = spawnSync('ip', ['netns', 'list'], { encoding: 'utf8' }).stdout;
+  for (const [name, pid] of listed.matchAll(/^windrow-(\d+)/gm)) if (!isAlive(Number(pid))) ip('netns', 'del', name);
+}
+
 function layCable(): boolean {
-  const { name, ours, theirs } = NETWORK;
-  const [near, far] = [`wr${String(process.pid)}a`, `wr${String(process.pid)}b`];
-  if (process.getuid?.() !== 0 || !ip('netns', 'add', name)) return false;
+  const { name, link, ours, theirs } = NETWORK;
+  if (process.getuid?.() !== 0 || spawnSync('ip', ['-V']).status !== 0) return false;
+  clearAbandoned();
+  const far = `${link}b`;
   return (
-    ip('link', 'add', near, 'type', 'veth', 'peer', 'name', far, 'netns', name) &&
-    ip('addr', 'add', `${ours}/24`, 'dev', near) &&
-    ip('link', 'set', near, 'up') &&
+    ip('netns', 'add', name) &&
+    ip('link', 'add', link, 'type', 'veth', 'peer', 'name', far, 'netns', name) &&
+    ip('addr', 'add', `${ours}/24`, 'dev', link) &&
+    ip('link', 'set', link, 'up') &&
     ip('-n', name, 'addr', 'add', `${theirs}/24`, 'dev', far) &&
     ip('-n', name, 'link', 'set', far, 'up') &&
     ip('-n', name, 'link', 'set', 'lo', 'up')
@@ -60,7 +70,7 @@ describe.skipIf(opened === null)('a cluster and its servers', { timeout: 240_000
   };
 
   it('loses PostgreSQL to kill -9 in mid-write, twice', async () => {
-    const file = costlySweep('killed-postgres', 2);
+    const file = costlySweep('killed-postgres', 40, 2);
     cluster.worker();
     const sweep = cluster.sweep(file);
     for (const cells of [1, 60]) {
@@ -74,7 +84,7 @@ describe.skipIf(opened === null)('a cluster and its servers', { timeout: 240_000
   });
 
   it('delivers every job twice', async () => {
-    const file = costlySweep('twice', 2.1, 10);
+    const file = costlySweep('twice', 10, 2.1);
     const queue = await openBullMqQueue({ url: cluster.redis.url, prefix: cluster.prefix });
     const pool = inlinePool();
     const tools = { store: cluster.store, queue, pool };
@@ -95,17 +105,16 @@ describe.skipIf(opened === null)('a cluster and its servers', { timeout: 240_000
   });
 
   it.skipIf(!cable)('cuts the link between a worker and both servers for 15 s', async () => {
-    const file = costlySweep('cut', 2.2);
+    const file = costlySweep('cut', 40, 2.2);
     const through = ['ip', 'netns', 'exec', NETWORK.name];
     const remote = (url: string): string => url.replace('127.0.0.1', NETWORK.ours);
     const env = { DATABASE_URL: remote(cluster.env['DATABASE_URL']), REDIS_URL: remote(cluster.env['REDIS_URL']) };
     const far = cluster.worker([], env, through);
     const sweep = cluster.sweep(file);
     await cluster.untilStored(file.name, 1);
-    const link = `wr${String(process.pid)}a`;
-    ip('link', 'set', link, 'down');
+    ip('link', 'set', NETWORK.link, 'down');
     await new Promise((resolve) => setTimeout(resolve, CUT_MS));
-    ip('link', 'set', link, 'up');
+    ip('link', 'set', NETWORK.link, 'up');
     // Nobody else computes: the worker itself must find its way back.
     expect(await sweep.end, `${sweep.stderr()}\n${far.stderr()}`).toBe(0);
     expect(far.ended()).toBe(false);

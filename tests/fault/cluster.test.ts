@@ -1,18 +1,22 @@
 /**
  * Faults of a cluster, with real servers and real processes: whatever dies, the rows at the end are those of a run that nothing
- * disturbed. Every test has points of its own, told apart by the tilt, so that none finds another's results.
+ * disturbed.
  */
-import { afterAll, afterEach, describe, expect, it } from 'vitest';
+import { afterEach, beforeEach, describe, expect, it } from 'vitest';
 import { cellsOf, costlySweep, openCluster, undisturbed, type Cluster, type SweepFile } from '../support/cluster.js';
+import { canStartRedis } from '../support/redis.js';
 import { rowsOf } from '../support/sweeps.js';
 import { waitFor } from '../support/wait-for.js';
 
-const opened = await openCluster();
-
-describe.skipIf(opened === null)('a cluster', { timeout: 180_000 }, () => {
-  const cluster = opened as Cluster;
-  afterEach(() => cluster.calm());
-  afterAll(() => cluster.close());
+describe.skipIf(!canStartRedis())('a cluster', { timeout: 180_000 }, () => {
+  let cluster: Cluster;
+  beforeEach(async () => {
+    cluster = (await openCluster()) as Cluster;
+  });
+  afterEach(async () => {
+    await cluster.calm();
+    await cluster.close();
+  });
 
   const sameRows = async (file: SweepFile): Promise<void> => {
     expect(await rowsOf(cluster.store, file.name)).toEqual(await undisturbed(file));
@@ -20,7 +24,7 @@ describe.skipIf(opened === null)('a cluster', { timeout: 180_000 }, () => {
   };
 
   it('computes a sweep with two workers and shows them', async () => {
-    const file = costlySweep('calm', 0);
+    const file = costlySweep('calm');
     const workers = [cluster.worker(), cluster.worker()];
     const sweep = cluster.sweep(file, ['--format', 'json']);
     expect(await sweep.end, sweep.stderr()).toBe(0);
@@ -33,7 +37,7 @@ describe.skipIf(opened === null)('a cluster', { timeout: 180_000 }, () => {
   });
 
   it('leaves a sweep to the workers, shows them, and follows it', async () => {
-    const file = costlySweep('detached', 0.05);
+    const file = costlySweep('detached');
     const detached = cluster.sweep(file, ['--detach']);
     expect(await detached.end, detached.stderr()).toBe(0);
     expect(detached.stderr()).toContain('no worker of method');
@@ -49,7 +53,7 @@ describe.skipIf(opened === null)('a cluster', { timeout: 180_000 }, () => {
   });
 
   it('loses a worker to kill -9 in mid-job', async () => {
-    const file = costlySweep('killed-worker', 0.1);
+    const file = costlySweep('killed-worker');
     const victim = cluster.worker();
     const sweep = cluster.sweep(file);
     await cluster.untilStored(file.name, 1);
@@ -63,7 +67,7 @@ describe.skipIf(opened === null)('a cluster', { timeout: 180_000 }, () => {
   });
 
   it('loses two workers to kill -9 on the same job, which is then split', async () => {
-    const file = costlySweep('killed-twice', 0.2, 4);
+    const file = costlySweep('killed-twice', 4);
     const sweep = cluster.sweep(file);
     const seen: string[] = [];
     for (let loss = 0; loss < 2; loss++) {
@@ -79,7 +83,7 @@ describe.skipIf(opened === null)('a cluster', { timeout: 180_000 }, () => {
   });
 
   it('loses the process that feeds it: a worker carries the sweep on', async () => {
-    const file = costlySweep('killed-feeder', 0.3);
+    const file = costlySweep('killed-feeder');
     const worker = cluster.worker();
     const sweep = cluster.sweep(file);
     await cluster.untilStored(file.name, 1);
@@ -91,7 +95,7 @@ describe.skipIf(opened === null)('a cluster', { timeout: 180_000 }, () => {
   });
 
   it('loses Redis and everything in it', async () => {
-    const file = costlySweep('killed-redis', 0.4);
+    const file = costlySweep('killed-redis');
     cluster.worker();
     const sweep = cluster.sweep(file);
     await cluster.untilStored(file.name, 1);
@@ -103,7 +107,7 @@ describe.skipIf(opened === null)('a cluster', { timeout: 180_000 }, () => {
   });
 
   it('meets a Redis whose memory is full', async () => {
-    const file = costlySweep('full-redis', 0.5);
+    const file = costlySweep('full-redis');
     await cluster.client.config('SET', 'maxmemory', '1mb');
     try {
       cluster.worker();
@@ -120,7 +124,7 @@ describe.skipIf(opened === null)('a cluster', { timeout: 180_000 }, () => {
   });
 
   it('drains a worker at SIGTERM: what runs is stored, the rest is given back', async () => {
-    const file = costlySweep('drained', 0.6);
+    const file = costlySweep('drained');
     const first = cluster.worker(['--grace', '60', '--format', 'json']);
     const sweep = cluster.sweep(file);
     await cluster.untilStored(file.name, 1);
@@ -136,7 +140,7 @@ describe.skipIf(opened === null)('a cluster', { timeout: 180_000 }, () => {
   });
 
   it('gives back what a grace of nothing interrupts, and ends at once at the second SIGTERM', async () => {
-    const file = costlySweep('hurried', 0.7);
+    const file = costlySweep('hurried');
     const first = cluster.worker(['--grace', '0']);
     const sweep = cluster.sweep(file);
     await cluster.untilStored(file.name, 1);
@@ -156,7 +160,7 @@ describe.skipIf(opened === null)('a cluster', { timeout: 180_000 }, () => {
   });
 
   it('has two processes that feed the same sweep', async () => {
-    const file = costlySweep('two-feeders', 0.8);
+    const file = costlySweep('two-feeders');
     cluster.worker();
     const sweeps = [cluster.sweep(file), cluster.sweep(file)];
     expect(await Promise.all(sweeps.map((sweep) => sweep.end)), sweeps.map((sweep) => sweep.stderr()).join()).toEqual([0, 0]);
@@ -164,7 +168,7 @@ describe.skipIf(opened === null)('a cluster', { timeout: 180_000 }, () => {
   });
 
   it('freezes a worker past its lock and lets it go on', async () => {
-    const file = costlySweep('frozen', 0.9, 6);
+    const file = costlySweep('frozen', 6);
     const frozen = cluster.worker();
     const sweep = cluster.sweep(file);
     await cluster.untilActive();
@@ -173,7 +177,7 @@ describe.skipIf(opened === null)('a cluster', { timeout: 180_000 }, () => {
     expect(await sweep.end, sweep.stderr()).toBe(0);
     frozen.kill('SIGCONT');
     // It finishes what it had, is told that the job is no longer its own, and goes on.
-    const after = costlySweep('after-frozen', 0.95, 6);
+    const after = costlySweep('after-frozen', 6, 0.1);
     const second = cluster.sweep(after);
     expect(await second.end, second.stderr()).toBe(0);
     expect(frozen.ended()).toBe(false);
@@ -182,7 +186,7 @@ describe.skipIf(opened === null)('a cluster', { timeout: 180_000 }, () => {
   });
 
   it('has a worker whose clock is an hour ahead', async () => {
-    const file = costlySweep('skewed', 1.1);
+    const file = costlySweep('skewed');
     const skew = `data:text/javascript,${encodeURIComponent('const now = Date.now; Date.now = () => now() + 3_600_000;')}`;
     cluster.worker([], { NODE_OPTIONS: `--import=${skew}` });
     cluster.worker();
@@ -196,7 +200,7 @@ describe.skipIf(opened === null)('a cluster', { timeout: 180_000 }, () => {
   });
 
   it('stops a sweep when it is asked to, and resumes it', async () => {
-    const file = costlySweep('stopped', 1.2);
+    const file = costlySweep('stopped');
     const worker = cluster.worker();
     const sweep = cluster.sweep(file);
     await cluster.untilStored(file.name, 1);

@@ -8,6 +8,7 @@ import { join } from 'node:path';
 import { Redis } from 'ioredis';
 import { runSweep } from '../../src/coordinator/run-sweep.js';
 import { openInProcessQueue } from '../../src/queue/in-process/in-process-queue.js';
+import { withRetry } from '../../src/core/retry.js';
 import { METHOD_VERSION } from '../../src/sweep/identity.js';
 import type { CellRow, ResultStore } from '../../src/store/types.js';
 import { startCli, type CliProcess } from './cli.js';
@@ -74,8 +75,9 @@ export async function openCluster(
     return process;
   };
   const active = async (): Promise<string[]> => client.lrange(`${prefix}:small-${METHOD_VERSION}:active`, 0, -1);
-  const storedCells = async (name: string): Promise<number> =>
-    (await store.findSweep(name)) === null ? 0 : (await store.progress(name)).storedCells;
+  const storedCells = (name: string): Promise<number> =>
+    // The server may have been restarted by the test just now.
+    withRetry(async () => ((await store.findSweep(name)) === null ? 0 : (await store.progress(name)).storedCells));
   return {
     redis,
     client,
@@ -111,8 +113,17 @@ export async function openCluster(
   };
 }
 
-/** The rows of an undisturbed run, in a database of its own. */
-export async function undisturbed(file: SweepFile): Promise<readonly CellRow[]> {
+const runs = new Map<string, Promise<readonly CellRow[]>>();
+
+/** The rows of an undisturbed run, in a database of its own; made once for sweeps that differ by name only. */
+export function undisturbed(file: SweepFile): Promise<readonly CellRow[]> {
+  const content = JSON.stringify({ ...file, name: '' });
+  const made = runs.get(content) ?? runInOneProcess(file);
+  runs.set(content, made);
+  return made;
+}
+
+async function runInOneProcess(file: SweepFile): Promise<readonly CellRow[]> {
   const database = await createDatabase();
   try {
     const store = await database.open();
@@ -124,7 +135,7 @@ export async function undisturbed(file: SweepFile): Promise<readonly CellRow[]> 
 }
 
 /** Some jobs of some tenths of a second each; sweeps of different tilt share no points. */
-export const costlySweep = (name: string, tilt: number, couplings = 40): SweepFile => ({
+export const costlySweep = (name: string, couplings = 40, tilt = 0): SweepFile => ({
   name,
   model: 'bose-hubbard-dimer',
   size: [10, 20, 30],

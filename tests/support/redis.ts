@@ -111,13 +111,17 @@ async function deleteKeys(url: string, prefix: string): Promise<void> {
   }
 }
 
+/** Whether a server of one's own can be had here; says aloud when not. */
+export function canStartRedis(): boolean {
+  if (redisProgram() !== null) return true;
+  aloud('no redis-server can be had on this machine; tests that need one of their own are SKIPPED');
+  return false;
+}
+
 /** A server that the caller may kill; null, said aloud, where no program can be had. */
 export async function ownRedis(options: OwnRedisOptions = {}): Promise<OwnRedis | null> {
   const found = redisProgram();
-  if (found === null) {
-    aloud('no redis-server can be had on this machine; tests that need one of their own are SKIPPED');
-    return null;
-  }
+  if (!canStartRedis() || found === null) return null;
   const folder = mkdtempSync(join(tmpdir(), 'windrow-redis-'));
   const port = await freePort();
   const url = `redis://127.0.0.1:${String(port)}`;

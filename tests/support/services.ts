@@ -81,11 +81,16 @@ export async function ownPostgres({ access = '', settings = {} }: OwnPostgresOpt
   const port = await freePort();
   // Tests that look at durability use the embedded store, which does sync.
   const own = { ...SETTINGS, listen_addresses: '127.0.0.1', port: String(port), fsync: 'off', ...settings };
+  /** the server that was killed; its file may still say that it is ready */
+  let killed = 0;
+  const isReady = async (): Promise<boolean> => {
+    const running = await readPostmaster(data.path);
+    return running !== null && running.status === 'ready' && running.pid !== killed;
+  };
   /** @returns whether it came up */
   const start = async (): Promise<boolean> => {
     const started = await startPostmaster(postgres, data, log, own);
-    while ((await readPostmaster(data.path))?.status !== 'ready')
-      if ((await Promise.race([started.ended, sleep(20)])) === 'ended') return false;
+    while (!(await isReady())) if ((await Promise.race([started.ended, sleep(20)])) === 'ended') return false;
     started.release();
     return true;
   };
@@ -95,9 +100,9 @@ export async function ownPostgres({ access = '', settings = {} }: OwnPostgresOpt
     source: 'the programs of the embedded store',
     port,
     async kill() {
-      const pid = (await readPostmaster(data.path))!.pid;
-      process.kill(pid, 'SIGKILL');
-      while (isAlive(pid)) await sleep(10);
+      killed = (await readPostmaster(data.path))!.pid;
+      process.kill(killed, 'SIGKILL');
+      while (isAlive(killed)) await sleep(10);
     },
     async restart() {
       // Until the orphaned sessions have ended, a new server refuses the folder.

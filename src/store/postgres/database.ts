@@ -39,6 +39,9 @@ export function createPool(config: pg.PoolConfig): pg.Pool {
   });
   // An idle connection that breaks is replaced at the next use, which reports what is wrong.
   pool.on('error', () => undefined);
+  // A connection may break at any moment, also between two uses or in the same breath as it was made, when nobody listens yet or any
+  // more; whoever uses it next is told by the failing request.
+  pool.on('connect', (client) => client.on('error', () => undefined));
   return pool;
 }
 
@@ -123,8 +126,6 @@ export class Database {
     } catch (error) {
       throw await this.#explained(error);
     }
-    const ignore = (): void => undefined;
-    client.on('error', ignore);
     let unusable = false;
     return {
       client,
@@ -132,10 +133,7 @@ export class Database {
         unusable ||= !(error instanceof WindrowError) && isConnectionLoss(error);
         return this.#explained(error);
       },
-      end: () => {
-        client.off('error', ignore);
-        client.release(unusable);
-      },
+      end: () => client.release(unusable),
     };
   }
 
