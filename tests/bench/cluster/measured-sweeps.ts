@@ -17,7 +17,7 @@ export const costlySweep = (name: string): SweepFile => ({
   name,
   model: 'bose-hubbard-dimer',
   size: [80, 100, 120],
-  coupling: { from: 0.01, to: 0.06, count: 80 },
+  coupling: { from: 0.01, to: 0.06, count: 320 },
   prepare: 'all-left',
   schedules: [
     { family: 'exponential', mean: 0.25 },
