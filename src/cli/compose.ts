@@ -25,10 +25,11 @@ export function storeText({ database, store }: Settings): string {
 }
 
 /** Opens the store and closes it with the command. The embedded one is made, and its schema brought up to date, where needed. */
-export async function openStore({ settings, closers }: Context): Promise<ResultStore> {
+export async function openStore(context: Context): Promise<ResultStore> {
+  const { settings, closers } = context;
   const store =
     settings.database === null
-      ? await openEmbeddedStore({ folder: resolve(settings.store) })
+      ? await openEmbeddedStore({ folder: resolve(settings.store), onNotice: (message) => say(context, `windrow: ${message}`) })
       : await openPostgresStore({ url: settings.database });
   closers.push(() => store.close());
   return store;
@@ -74,9 +75,10 @@ export async function openWorkers(context: Context): Promise<Workers> {
     await tellIfAlone(context, queue);
     return { queue, pool: null, window: CLUSTER_WINDOW };
   }
-  const pool = openPool(context);
   const queue = openInProcessQueue();
   closers.push(() => queue.close());
+  // Opened last, closed first: the queue waits for its jobs, and those end when their threads do.
+  const pool = openPool(context);
   return { queue, pool };
 }
 

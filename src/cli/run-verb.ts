@@ -30,7 +30,7 @@ export interface VerbTraits {
 }
 
 /** How long things may take to close when the process is to end at once. */
-const CLOSE_MS = 2_000;
+const CLOSE_MS = 5_000;
 
 function settingsOf(io: Io, options: CommonOptions): Settings {
   const given = OVERRIDES.flatMap((name) => {
@@ -63,6 +63,7 @@ export function runVerb<Arguments extends readonly unknown[], Options extends ob
     const abort = new AbortController();
     const closers: Context['closers'] = [];
     let interrupts = 0;
+    let ending = false;
     const interrupt = (): void => {
       interrupts++;
       if (interrupts === 1 && traits.drains === true) {
@@ -70,6 +71,7 @@ export function runVerb<Arguments extends readonly unknown[], Options extends ob
         say(io, 'windrow: finishing what runs; interrupt again to stop at once');
         return;
       }
+      ending = true;
       setTimeout(() => process.exit(EXIT.interrupted), CLOSE_MS).unref();
       void closeAll(closers).finally(() => process.exit(EXIT.interrupted));
     };
@@ -80,6 +82,8 @@ export function runVerb<Arguments extends readonly unknown[], Options extends ob
       const log = createLog({ level: settings.log_level, terminal: io.err.isTTY === true });
       process.exitCode = await action({ ...io, settings, format, log, signal: abort.signal, closers }, options, ...args);
     } catch (error) {
+      // What was closed under the command's hands is no news to who interrupted it.
+      if (ending) return;
       // Output that cannot be written has been told where the stream is watched.
       if (isBrokenPipe(error) || (error instanceof Error && TOLD.has(error))) return;
       io.err.write(`${errorText(error, format)}\n`);
