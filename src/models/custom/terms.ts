@@ -26,12 +26,15 @@ const hamiltonian = remember(
 /** No value that a term list is written for: what is conserved at it is conserved at all of them. */
 const GENERIC = 0.754_877_666_246_692_8;
 
-const conserves = remember(
+const conservesGenerally = remember(
   16,
   ({ size, parameters: given }: TermRequest) => canonicalJson({ size, parameters: given }),
   (request: TermRequest) =>
     termHamiltonian({ ...request, coupling: GENERIC, disorder: { strength: GENERIC, seed: 0, realisation: 0 } }).conserves,
 );
+
+/** An element may be rounding beside the generic values that cancel there and stand out beside the given ones, so these are asked too. */
+const conserves = (request: TermRequest): boolean => conservesGenerally(request) && hamiltonian(request).conserves;
 
 /** One way of writing for terms that are the same: the words for stretches of one and two sites, no lists of one factor. */
 function canonicalTerm(term: TermForm): TermForm {
