@@ -191,7 +191,7 @@ describe('reading commands', () => {
     const across = JSON.parse((await place.run('cut', 'junction', '--at', 'coupling=2', '--format', 'json')).out) as Record_[];
     expect(across.map(({ size }) => size)).toEqual([2, 4, 6]);
     expect((await place.run('cut', 'junction', '--at', 'size=4')).out).toContain(
-      'winding number · exponential, mean 0.5, budget 50 · size 4',
+      'winding number · exponential, mean 0.5; K = 50, δ = 0.04, ε = 0.02 · size 4',
     );
   });
 
