@@ -7,6 +7,7 @@ export default defineConfig({
     include: ['tests/**/*.test.ts'],
     benchmark: { include: ['tests/bench/**/*.bench.ts'] },
     globalSetup: ['tests/support/global-setup.ts'],
+    setupFiles: ['tests/support/property-seed.ts'],
     testTimeout: 60_000,
     hookTimeout: 120_000,
     pool: 'forks',
