@@ -3,36 +3,17 @@ import { spawnSync } from 'node:child_process';
 import { chmodSync, mkdirSync, readFileSync, rmSync, utimesSync, writeFileSync } from 'node:fs';
 import { join } from 'node:path';
 import { setTimeout as sleep } from 'node:timers/promises';
-import { afterAll, afterEach, beforeAll, describe, expect, it } from 'vitest';
+import { afterEach, describe, expect, it } from 'vitest';
 import { WindrowError } from '../../src/core/errors.js';
 import { withRetry } from '../../src/core/retry.js';
 import { openEmbeddedStore } from '../../src/store/embedded/embedded-store.js';
 import { isServing, readPostmaster } from '../../src/store/embedded/postmaster.js';
 import { gridPoint, measured, pointResult, returnMeasure, sweepOf } from '../support/results.js';
-import { copyOfStore, makeStoreFolder } from '../support/store-folder.js';
+import { makeStoreFolder } from '../support/store-folder.js';
+import { storeFolders } from '../support/store-folders.js';
 import { startStoreProcess } from '../support/store-process.js';
 
-const folders: string[] = [];
-let template: string;
-/** With a store in it, that nobody has open. */
-const storeFolder = (): string => {
-  const folder = copyOfStore(template);
-  folders.push(folder);
-  return folder;
-};
-const emptyFolder = (): string => {
-  const folder = makeStoreFolder();
-  folders.push(folder);
-  return folder;
-};
-beforeAll(async () => {
-  template = makeStoreFolder();
-  await (await openEmbeddedStore({ folder: template })).close();
-});
-afterAll(() => rmSync(template, { recursive: true, force: true }));
-afterEach(() => {
-  for (const folder of folders.splice(0)) rmSync(folder, { recursive: true, force: true });
-});
+const { storeFolder, emptyFolder } = storeFolders();
 
 const server = async (folder: string) => {
   const data = join(folder, 'data');

@@ -14,38 +14,18 @@ import {
 } from 'node:fs';
 import { dirname, join } from 'node:path';
 import { setTimeout as sleep } from 'node:timers/promises';
-import { afterAll, afterEach, beforeAll, describe, expect, it } from 'vitest';
+import { describe, expect, it } from 'vitest';
 import { findPackage, prepareBinaries } from '../../src/store/embedded/binaries.js';
 import { openEmbeddedStore } from '../../src/store/embedded/embedded-store.js';
 import { isServing, readPostmaster } from '../../src/store/embedded/postmaster.js';
 import { sweepOf } from '../support/results.js';
-import { copyOfStore, makeStoreFolder } from '../support/store-folder.js';
+import { storeFolders } from '../support/store-folders.js';
 import { startStoreProcess } from '../support/store-process.js';
 
 const asRoot = process.getuid?.() === 0;
 const NOBODY = { uid: 65534, gid: 65534 };
 
-const folders: string[] = [];
-let template: string;
-/** With a store in it, that nobody has open. */
-const storeFolder = (): string => {
-  const folder = copyOfStore(template);
-  folders.push(folder);
-  return folder;
-};
-const emptyFolder = (): string => {
-  const folder = makeStoreFolder();
-  folders.push(folder);
-  return folder;
-};
-beforeAll(async () => {
-  template = makeStoreFolder();
-  await (await openEmbeddedStore({ folder: template })).close();
-});
-afterAll(() => rmSync(template, { recursive: true, force: true }));
-afterEach(() => {
-  for (const folder of folders.splice(0)) rmSync(folder, { recursive: true, force: true });
-});
+const { storeFolder, emptyFolder } = storeFolders();
 
 const serving = async (folder: string): Promise<boolean> => {
   const data = join(folder, 'data');
